@@ -1,0 +1,3 @@
+module halfplane
+
+go 1.26.8
