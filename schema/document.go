@@ -50,6 +50,9 @@ type Node struct {
 	Type       ScalarType
 	Value      string  // a scalar's decoded text
 	Number     float64 // of a Number
+	// Alias is set on an alias: the anchored value that it stands for. Start and End are those of the alias; what is
+	// inside is the anchored value's and stands where it was written.
+	Alias *Node
 	// Via is set on a value that was brought in by `use` or `part`: the reference in the design (its node).
 	Via *Node
 }
@@ -59,6 +62,7 @@ type Entry struct {
 	Key              string
 	KeyStart, KeyEnd int // the key's text with its quotes, without the colon
 	KeyDoc           *Document
+	Merged           bool // brought in by a merge key: key and value stand in the mapping that was merged
 	Value            *Node
 }
 

@@ -1,0 +1,285 @@
+package schema
+
+import "strings"
+
+// yamlSlot is where a value of block structure stands; it decides what may begin on the same line.
+type yamlSlot int
+
+const (
+	atTop    yamlSlot = iota + 1 // the whole document
+	afterKey                     // behind a key's colon: only values of one line, or a list as deep as the key on new lines
+	afterTic                     // behind the dash of a list item, or an explicit key's mark: everything
+)
+
+// value reads what stands at pos or on the lines below it that are indented more than indent. Where nothing is written
+// it is a Null of no length at pos.
+func (r *yamlReader) value(indent int, s yamlSlot) *Node {
+	at, line := r.pos, r.lineStart
+	if s == atTop {
+		line = -1
+	}
+	var p yamlProperties
+	for {
+		r.nextBlock()
+		if r.end() || !r.belongs(indent, s, line) {
+			return r.apply(&p, r.null(at))
+		}
+		begins := s != afterKey || r.lineStart != line
+		if c := r.peek(); c != '&' && c != '!' || begins && r.keyAhead() {
+			return r.apply(&p, r.content(indent, s, begins, r.lineStart != line))
+		}
+		r.property(&p)
+		at = r.pos
+	}
+}
+
+// belongs is true when pos stands deep enough for a value below indent. line is the line of the key or dash.
+func (r *yamlReader) belongs(indent int, s yamlSlot, line int) bool {
+	col := r.column()
+	return r.lineStart == line || col > indent || s == afterKey && col == indent && r.dash()
+}
+
+// content reads a value at pos. begins tells that block structure may begin here, fresh that it is the line's first.
+func (r *yamlReader) content(indent int, s yamlSlot, begins, fresh bool) *Node {
+	col := r.column()
+	switch {
+	case r.dash():
+		if !begins {
+			r.report(r.pos, r.pos+1, "a list begins on a line of its own, below its key")
+		}
+		r.tabInside(begins && !fresh)
+		return r.list(col, s == afterKey && col == indent)
+	case begins && (r.mark('?') || r.keyAhead()):
+		r.tabInside(!fresh)
+		return r.mapping(col)
+	}
+	pos, line, problems := r.pos, r.lineStart, len(r.problems)
+	n := r.inline(indent)
+	if !fresh {
+		return n
+	}
+	r.nextBlock()
+	if !r.end() && r.column() == col && col > indent && !r.stopped {
+		// More follows at the same depth: this is a mapping whose first line lacks its colon.
+		r.pos, r.lineStart, r.problems = pos, line, r.problems[:problems]
+		return r.mapping(col)
+	}
+	return n
+}
+
+// tabInside reports a tab between a dash and the mapping or list that begins on its line.
+func (r *yamlReader) tabInside(compact bool) {
+	if compact && r.pos > 0 && r.src[r.pos-1] == '\t' {
+		r.report(r.pos-1, r.pos, "a tab indents what follows: indent with blanks")
+	}
+}
+
+// dash and mark are true at a one-byte sign of block structure, which a blank follows.
+func (r *yamlReader) dash() bool { return r.mark('-') }
+
+func (r *yamlReader) mark(c byte) bool { return r.peek() == c && r.blankAt(r.pos+1) }
+
+// list reads the items of a list whose dashes stand in column col. level tells that it stands as deep as its key.
+func (r *yamlReader) list(col int, level bool) *Node {
+	n := r.node(Sequence, r.pos, r.pos+1)
+	first := len(r.items)
+	if r.enter(r.pos) {
+		for {
+			n.End = r.pos + 1
+			r.pos++
+			item := r.value(col, afterTic)
+			r.items = append(r.items, item)
+			n.End = max(n.End, item.End)
+			if !r.anotherItem(n, col, level) {
+				break
+			}
+		}
+	}
+	r.leave()
+	r.closeItems(first, n)
+	return n
+}
+
+// anotherItem moves to the next dash of the list, past lines that have no place in it.
+func (r *yamlReader) anotherItem(n *Node, col int, level bool) bool {
+	for {
+		r.nextBlock()
+		switch c := r.column(); {
+		case r.end() || c < col || c == col && level && !r.dash():
+			return false
+		case c == col && r.dash():
+			return true
+		case c == col:
+			r.misplaced("every item of this list begins with '- '")
+		default:
+			r.misplaced("this line is indented deeper than the list it stands in")
+		}
+		n.End = max(n.End, r.value(col-1, atTop).End)
+	}
+}
+
+// mapping reads the entries of a mapping whose keys stand in column col.
+func (r *yamlReader) mapping(col int) *Node {
+	n := r.node(Mapping, r.pos, r.pos)
+	keys := keySet{first: len(r.entries)}
+	if r.enter(r.pos) {
+		for {
+			r.entry(n, &keys, col)
+			if !r.anotherEntry(n, &keys, col) {
+				break
+			}
+		}
+	}
+	r.leave()
+	r.merge(&keys)
+	keys.close(r.tree, n)
+	return n
+}
+
+// anotherEntry moves to the next key of the mapping, past lines that have no place in it.
+func (r *yamlReader) anotherEntry(n *Node, keys *keySet, col int) bool {
+	for {
+		r.nextBlock()
+		c := r.column()
+		if r.end() || c < col {
+			return false
+		}
+		if c == col && !r.dash() {
+			return true
+		}
+		if c == col {
+			r.misplaced("a list item stands where a key was expected")
+		} else {
+			r.misplaced("this line is indented differently from the lines it belongs to")
+		}
+		v := r.value(col-1, atTop)
+		n.End = max(n.End, v.End)
+		if v.Kind == Mapping && v.Alias == nil {
+			for _, e := range v.Entries {
+				r.add(keys, e)
+			}
+		}
+	}
+}
+
+// entry reads one key and its value into the open mapping n.
+func (r *yamlReader) entry(n *Node, keys *keySet, col int) {
+	explicit := r.mark('?')
+	if explicit {
+		r.pos++
+		r.skipBlanks()
+	}
+	k, ok := r.key(explicit)
+	n.End = max(n.End, k.end)
+	if explicit {
+		r.next()
+		if r.column() != col || !r.mark(':') {
+			k.value = r.null(k.end)
+			r.addKey(keys, k)
+			return
+		}
+	}
+	if ok {
+		n.End = max(n.End, r.pos+1)
+		r.pos++
+	}
+	v := r.value(col, afterKey)
+	n.End = max(n.End, v.End)
+	if ok {
+		k.value = v
+		r.addKey(keys, k)
+	}
+}
+
+// yamlKey is one key as it was read.
+type yamlKey struct {
+	text       string
+	start, end int
+	plain      bool
+	wrong      bool // no text: reported already
+	value      *Node
+}
+
+func (r *yamlReader) addKey(keys *keySet, k yamlKey) {
+	if !k.wrong {
+		r.add(keys, Entry{Key: k.text, KeyStart: k.start, KeyEnd: k.end, KeyDoc: r.doc, Value: k.value})
+	}
+}
+
+// key reads a key up to its colon. ok is false, and the line is read to its end, when there is no colon.
+func (r *yamlReader) key(explicit bool) (k yamlKey, ok bool) {
+	k = r.keyText(true)
+	r.skipBlanks()
+	if explicit || r.mark(':') {
+		return k, true
+	}
+	rest := r.plainEnd(k.start, r.lineEnd(r.pos))
+	text := r.src[k.start:rest]
+	if i := strings.IndexByte(text, ':'); i > 0 && k.plain {
+		r.report(k.start, rest, "a blank is missing behind the colon of '%s'", shortenText(text[:i]))
+	} else {
+		r.report(k.start, rest, "a colon is missing behind the key '%s'", shortenText(text))
+	}
+	r.skipLine()
+	return k, false
+}
+
+// keyText reads the text of a key: plain, quoted or an alias.
+func (r *yamlReader) keyText(block bool) yamlKey {
+	var p yamlProperties
+	for c := r.peek(); c == '&' || c == '!'; c = r.peek() {
+		r.property(&p)
+		r.skipBlanks()
+	}
+	start := r.pos
+	var n *Node
+	switch c := r.peek(); {
+	case c == '"' || c == '\'':
+		n = r.quoted(r.column(), true)
+	case c == '*':
+		n = r.alias()
+	case c == '[' || c == '{':
+		n = r.flow(r.column())
+		r.report(n.Start, n.End, "a key is a word, not a %s", n.Kind)
+		return yamlKey{start: n.Start, end: n.End, wrong: true}
+	default:
+		return r.plainKey(&p, block)
+	}
+	r.apply(&p, n)
+	return yamlKey{text: n.Value, start: start, end: n.End, wrong: n.Kind != Scalar}
+}
+
+// plainKey reads a key without quotes, on one line.
+func (r *yamlReader) plainKey(p *yamlProperties, block bool) yamlKey {
+	start := r.pos
+	if r.mark(':') {
+		r.report(start, start+1, "the key before this colon is missing")
+		return yamlKey{start: start, end: start, plain: true, wrong: true}
+	}
+	r.canBegin(block)
+	end := r.plainLine(start, !block)
+	n := r.node(Scalar, start, end)
+	n.Type, n.Value = Text, r.src[start:end]
+	r.pos = end
+	r.apply(p, n)
+	return yamlKey{text: n.Value, start: start, end: end, plain: true}
+}
+
+// misplaced reports the first word of a line that does not stand where it should; a line that a tab indents was
+// reported for that.
+func (r *yamlReader) misplaced(message string) {
+	if r.tabLine != r.lineStart {
+		r.strayToken(message)
+	}
+}
+
+// strayToken reports the key or text at pos.
+func (r *yamlReader) strayToken(message string) {
+	end := r.lineEnd(r.pos)
+	if !strings.ContainsRune(`"'[{`, rune(r.peek())) {
+		if word := r.plainLine(r.pos, false); word > r.pos {
+			end = word
+		}
+	}
+	r.report(r.pos, r.pos+len(strings.TrimRight(r.src[r.pos:end], " \t")), "%s", message)
+}
