@@ -1,6 +1,9 @@
 package rules
 
 import (
+	"cmp"
+	"slices"
+
 	"halfplane/analysis"
 	"halfplane/schema"
 )
@@ -14,6 +17,31 @@ const (
 	Warning
 	Error
 )
+
+// String is the severity's name in policies and in every output form.
+func (s Severity) String() string {
+	switch s {
+	case None:
+		return "none"
+	case Note:
+		return "note"
+	case Warning:
+		return "warning"
+	case Error:
+		return "error"
+	}
+	return "unknown"
+}
+
+// ParseSeverity reads a severity's name.
+func ParseSeverity(name string) (Severity, bool) {
+	for s := None; s <= Error; s++ {
+		if s.String() == name {
+			return s, true
+		}
+	}
+	return 0, false
+}
 
 // Number is a value with its SI unit symbol ("" for a ratio, "deg", "dB").
 type Number struct {
@@ -41,3 +69,29 @@ type Finding struct {
 
 // Cause names the finding that a consequence follows from.
 type Cause struct{ Rule, Pointer string }
+
+// Sort orders findings by their place in the text, then by rule, then by message.
+func Sort(findings []Finding) {
+	slices.SortStableFunc(findings, func(a, b Finding) int {
+		return cmp.Or(
+			cmp.Compare(a.Start, b.Start),
+			cmp.Compare(a.Rule, b.Rule),
+			cmp.Compare(a.End, b.End),
+			cmp.Compare(a.Message, b.Message),
+		)
+	})
+}
+
+// FromProblems turns what is wrong with a file's text, shape and quantities into findings. Their severity is fixed: a
+// file that cannot be read has not been checked.
+func FromProblems(problems []schema.Problem) []Finding {
+	findings := make([]Finding, 0, len(problems))
+	for _, p := range problems {
+		findings = append(findings, Finding{
+			Rule: p.Rule, Severity: Error, Message: p.Message,
+			Pointer: p.Pointer, Doc: p.Doc, Start: p.Start, End: p.End, Related: p.Related,
+		})
+	}
+	Sort(findings)
+	return findings
+}

@@ -18,19 +18,72 @@ const (
 	Keeping
 )
 
+// String is the group's name in the catalogue.
+func (g Group) String() string {
+	switch g {
+	case Declared:
+		return "declared"
+	case Operating:
+		return "operating"
+	case Plant:
+		return "plant"
+	case Loop:
+		return "loop"
+	case Transient:
+		return "transient"
+	case Review:
+		return "review"
+	case Keeping:
+		return "keeping"
+	}
+	return "unknown"
+}
+
+// Sentence says what the rules of the group look at.
+func (g Group) Sentence() string {
+	switch g {
+	case Declared:
+		return "the file against itself"
+	case Operating:
+		return "what each corner asks of the parts"
+	case Plant:
+		return "what the power stage allows"
+	case Loop:
+		return "what the closed loop does"
+	case Transient:
+		return "what the exact switched waveform does"
+	case Review:
+		return "what reviewers ask for, and what failed on benches"
+	case Keeping:
+		return "exceptions and limits that are on record"
+	}
+	return ""
+}
+
 // Threshold is one policy key of a rule with its built-in default, in the SI unit (degrees, dB, ratios as such).
+// A two-sided threshold is two of them, KEY.min and KEY.max.
 type Threshold struct {
 	Key     string
 	Default float64
-	Unit    string // "" ratio, "deg", "dB", "%"
+	Unit    string // "" ratio, "%" a ratio that is worded per cent, "deg", "dB", "Hz"
 }
+
+// Reading says what a rule must know of a corner to judge it; the runner reports the corners that lack it.
+type Reading int
+
+const (
+	Declaration Reading = iota + 1 // the file alone, no corner
+	Operation                      // the operating point of every corner
+	Model                          // the small-signal model
+	Figures                        // the loop's figures
+)
 
 // Rule is one declaration; everything that lists rules is made from it.
 type Rule struct {
 	Name     string
 	Group    Group
-	Severity Severity
-	Sentence string // what good looks like
+	Severity Severity // the default; a finding of a rule with two severities states its own
+	Sentence string   // what good looks like
 	Formula  string
 	Source   string // author, title, year, section; or "common practice"
 	Policy   []Threshold
@@ -38,6 +91,12 @@ type Rule struct {
 	Applies  func(*Case) bool
 	Needs    []string // JSON pointers without which it cannot be assessed
 	Decide   func(*Case) []Finding
+
+	Reads  Reading
+	Judges func(*analysis.Corner) bool // the corners that the rule is about; nil: all of them
+	Place  func(*Case) string          // JSON pointer of its findings; nil where each finding has its own
+	// Unassessed names what else is missing for an assessment, "" when nothing is; nil: nothing ever is.
+	Unassessed func(*Case) string
 }
 
 // Case is an analysed design, as rules see it. Rules read it and write nothing.
@@ -49,6 +108,8 @@ type Case struct {
 }
 
 // Settings are the severities and thresholds in force for one file; the zero value means the built-in defaults.
+// Thresholds holds only what a policy file sets, in the units of the rules' declarations; the two ends of a two-sided
+// threshold stand under KEY.min and KEY.max.
 type Settings struct {
 	Severities map[string]Severity
 	Thresholds map[string]float64

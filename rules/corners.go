@@ -1,0 +1,85 @@
+package rules
+
+import (
+	"math"
+	"slices"
+
+	"halfplane/analysis"
+	"halfplane/analysis/plant"
+)
+
+// worst finds the corner with the highest score; a corner whose score is NaN is passed over. It returns nil when no corner
+// has a score. Of equal corners the first in the analysis' order counts: nominal before operating before refined.
+func (c *Case) worst(score func(*analysis.Corner) float64) (*analysis.Corner, float64) {
+	var found *analysis.Corner
+	highest := math.Inf(-1)
+	for i := range c.Result.Corners {
+		corner := &c.Result.Corners[i]
+		if s := score(corner); s > highest {
+			found, highest = corner, s
+		}
+	}
+	return found, highest
+}
+
+// nominal is the corner at nominal input, load and parts.
+func (c *Case) nominal() *analysis.Corner { return &c.Result.Corners[0] }
+
+// fullLoad is the corner for which figures are stated: nominal input, full load, nominal parts.
+func (c *Case) fullLoad() *analysis.Corner {
+	full := c.axis("load.current").Max
+	for i := range c.Result.Corners[:min(c.Result.Operating+1, len(c.Result.Corners))] {
+		corner := &c.Result.Corners[i]
+		if c.valueAt(corner, "load.current") == full && c.valueAt(corner, "input-voltage") == c.axis("input-voltage").Nominal {
+			return corner
+		}
+	}
+	return c.nominal()
+}
+
+// axis is a field's spread; a field without one has its nominal value three times.
+func (c *Case) axis(path string) analysis.Axis {
+	for _, a := range c.Design.Axes {
+		if a.Path == path {
+			return a
+		}
+	}
+	point := c.Design.Nominal
+	value := math.NaN()
+	if field := analysis.Field(&point, path); field != nil {
+		value = *field
+	}
+	return analysis.Axis{Path: path, Min: value, Nominal: value, Max: value}
+}
+
+// valueAt is a field's value at a corner, as written in the spec.
+func (c *Case) valueAt(corner *analysis.Corner, path string) float64 {
+	for _, s := range corner.At {
+		if s.Path == path {
+			return s.Value
+		}
+	}
+	return c.axis(path).Nominal
+}
+
+// point is every number of the design at a corner.
+func (c *Case) point(settings []analysis.Setting) analysis.Point {
+	p := c.Design.Nominal
+	p.Circuit.Banks = slices.Clone(p.Circuit.Banks)
+	p.Network.Zeros, p.Network.Poles = slices.Clone(p.Network.Zeros), slices.Clone(p.Network.Poles)
+	p.Network.Numerator, p.Network.Denominator = slices.Clone(p.Network.Numerator), slices.Clone(p.Network.Denominator)
+	for _, s := range settings {
+		if field := analysis.Field(&p, s.Path); field != nil {
+			*field = s.Value
+		}
+	}
+	return p
+}
+
+// sameCorner says whether two assignments are the same.
+func sameCorner(a, b []analysis.Setting) bool { return slices.Equal(a, b) }
+
+// continuous says whether a corner has a model and is in continuous conduction.
+func continuous(corner *analysis.Corner) bool {
+	return corner.Reached && corner.Plant.Mode == plant.Continuous
+}

@@ -1,0 +1,33 @@
+package rules
+
+import (
+	"fmt"
+
+	"halfplane/analysis"
+)
+
+var phaseMargin = Rule{
+	Name:     "phase-margin",
+	Group:    Loop,
+	Severity: Error,
+	Sentence: "The smallest phase margin over all crossovers and corners meets the target.",
+	Formula:  "min |arg(-T(j 2 pi fc))| over all crossovers fc >= target; negative when the closed loop is unstable",
+	Source:   "H. Nyquist, \"Regeneration theory\", Bell System Technical Journal 11 (1932); 45° is common practice",
+	Policy:   []Threshold{phaseMarginLimit},
+	Example:  "targets: {phase-margin: 60 deg}   # the loop has 48°",
+	Reads:    Figures,
+	Place:    targetOrGainPart("/targets/phase-margin"),
+	Decide: margin{
+		name: "phase margin", unit: "deg", target: "/targets/phase-margin", limit: phaseMarginLimit,
+		of: func(k *analysis.Corner) float64 {
+			return loopFigure(k, func(k *analysis.Corner) float64 { return k.Loop.PhaseMargin })
+		},
+		sum: func(k *analysis.Corner) string {
+			if len(k.Loop.Crossovers) > 1 {
+				return fmt.Sprintf("smallest |arg(-T)| over %d crossovers, the highest at %s, = %s",
+					len(k.Loop.Crossovers), number(k.Loop.Crossover, "Hz"), number(k.Loop.PhaseMargin, "deg"))
+			}
+			return fmt.Sprintf("180° + arg T(j 2 pi * %s) = %s", number(k.Loop.Crossover, "Hz"), number(k.Loop.PhaseMargin, "deg"))
+		},
+	}.decide,
+}

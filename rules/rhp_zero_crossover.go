@@ -1,0 +1,66 @@
+package rules
+
+import (
+	"fmt"
+	"math"
+
+	"halfplane/analysis"
+)
+
+var rhpZeroCrossover = Rule{
+	Name:     "rhp-zero-crossover",
+	Group:    Plant,
+	Severity: Error,
+	Sentence: "Crossover stays well below the right-half-plane zero at every corner.",
+	Formula:  "fc <= rhp-zero-fraction * fz, both of the same corner",
+	Source:   "K. J. Åström, \"Limitations on control system performance\", European Journal of Control 6 (2000); the fraction of 1/5 is common practice",
+	Policy:   []Threshold{rhpZeroFraction},
+	Example:  "compensator: {network: type-3, feedback-resistor: 47k, …}   # crosses at a third of the zero",
+	Reads:    Figures,
+	Place:    gainPart,
+	Applies: func(c *Case) bool {
+		_, ratio := c.worst(func(k *analysis.Corner) float64 { return rhpZero(k) })
+		return ratio > 0
+	},
+	Decide: func(c *Case) []Finding {
+		limit := c.threshold(rhpZeroFraction)
+		corner, ratio := c.worst(crossoverOverZero)
+		if corner == nil || ratio <= limit {
+			return nil
+		}
+		fc, fz := corner.Loop.Crossover, corner.Plant.RHPZero
+		f := c.atCorner(gainPart(c), corner)
+		f.Message = fmt.Sprintf("crossover %s is above %s of the right-half-plane zero, %s (limit %s)",
+			number(fc, "Hz"), fraction(limit), number(fz, "Hz"), number(limit*fz, "Hz"))
+		f.Formula = fmt.Sprintf("fc <= %s * fz = %s * %s = %s; fc = %s",
+			fraction(limit), fraction(limit), number(fz, "Hz"), number(limit*fz, "Hz"), number(fc, "Hz"))
+		f.Measured, f.Limit = asNumber(fc, "Hz"), asNumber(limit*fz, "Hz")
+		f.Nominal = nominalCrossover(c)
+		c.relate(&f, "sets the right-half-plane zero", "/inductor/inductance", "/second-inductor/inductance",
+			"/input-voltage", "/load/current", "/output-voltage", "/turns")
+		if all := c.Result.Worst.HighestCrossoverOverLowestRHPZero; !math.IsNaN(all) {
+			f.tell(fmt.Sprintf("for information: the highest crossover of all over the lowest zero of all is %s", number(all, "")))
+		}
+		return []Finding{f}
+	},
+}
+
+// rhpZero is a corner's lowest right-half-plane zero (Hz), NaN where there is none or no model.
+func rhpZero(k *analysis.Corner) float64 {
+	if !k.Reached || !k.Plant.HasModel {
+		return math.NaN()
+	}
+	return k.Plant.RHPZero
+}
+
+// crossover is a corner's highest crossover (Hz), NaN where the loop never crosses one or has no model.
+func crossover(k *analysis.Corner) float64 {
+	if !k.Reached || k.Loop == nil {
+		return math.NaN()
+	}
+	return k.Loop.Crossover
+}
+
+func crossoverOverZero(k *analysis.Corner) float64 { return crossover(k) / rhpZero(k) }
+
+func nominalCrossover(c *Case) *Number { return asNumber(crossover(c.nominal()), "Hz") }

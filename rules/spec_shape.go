@@ -1,0 +1,12 @@
+package rules
+
+var specShape = Rule{
+	Name:     "spec-shape",
+	Group:    Declared,
+	Severity: Error,
+	Sentence: "The file fits its schema: every needed key is there, none is unknown or unused, names and types are right, shared files resolve.",
+	Formula:  "the file validates against the JSON Schema of its kind",
+	Source:   "JSON Schema, draft 2020-12",
+	Example:  "inductor: {inductanse: 22 uH}",
+	Reads:    Declaration,
+}

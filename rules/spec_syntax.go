@@ -1,0 +1,15 @@
+package rules
+
+// The three rules of reading are found while a file is read (package schema) and worded there; see FromProblems. A case
+// exists only for a file that holds them.
+
+var specSyntax = Rule{
+	Name:     "spec-syntax",
+	Group:    Declared,
+	Severity: Error,
+	Sentence: "The file can be read: valid UTF-8, well-formed YAML or JSON, each key once.",
+	Formula:  "one value for each key",
+	Source:   "YAML 1.2.2 (2021) and RFC 8259 (2017)",
+	Example:  "title: Tide gauge supply\ntitle: Tide gauge supply, second board",
+	Reads:    Declaration,
+}

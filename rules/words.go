@@ -1,0 +1,171 @@
+package rules
+
+import (
+	"fmt"
+	"math"
+	"strconv"
+	"strings"
+
+	"halfplane/analysis"
+	"halfplane/schema"
+)
+
+// number prints a figure with its unit to three significant digits; a plain ratio without any.
+func number(value float64, unit string) string {
+	switch {
+	case math.IsNaN(value):
+		return "none"
+	case unit == "%":
+		return percent(value)
+	}
+	return schema.Format(value, unit)
+}
+
+// percent prints a ratio per cent to three significant digits.
+func percent(ratio float64) string {
+	return schema.Format(ratio*100, "%")
+}
+
+// fraction prints a limit that is one part of something as 1/5, anything else as a number.
+func fraction(value float64) string {
+	if value > 0 && value < 1 {
+		whole := math.Round(1 / value)
+		if whole <= 100 && math.Abs(1/value-whole) < 1e-9*whole {
+			return fmt.Sprintf("1/%.0f", whole)
+		}
+	}
+	return short(value)
+}
+
+// short prints a plain number as a person would: three significant digits, no trailing zeros.
+func short(value float64) string {
+	return strconv.FormatFloat(value, 'g', 3, 64)
+}
+
+// asNumber wraps a figure for a finding; a figure that does not exist is left out.
+func asNumber(value float64, unit string) *Number {
+	if math.IsNaN(value) || math.IsInf(value, 0) {
+		return nil
+	}
+	if unit == "%" {
+		unit = ""
+	}
+	return &Number{Value: value, Unit: unit}
+}
+
+// lastKey is the last step of a JSON pointer that is a key, not a list index.
+func lastKey(pointer string) string {
+	steps := strings.Split(pointer, "/")
+	for i := len(steps) - 1; i > 0; i-- {
+		if _, err := strconv.Atoi(steps[i]); err != nil {
+			return steps[i]
+		}
+	}
+	return ""
+}
+
+// spaced turns a key into words.
+func spaced(key string) string {
+	return strings.ReplaceAll(key, "-", " ")
+}
+
+// pointerOf turns a dotted path of the spec format into a JSON pointer.
+func pointerOf(path string) string {
+	return "/" + strings.ReplaceAll(path, ".", "/")
+}
+
+// cornerWords says a corner as an engineer does: input and load, then whatever is not at its nominal value, tolerances per
+// cent and ranges as the value itself.
+func (c *Case) cornerWords(corner []analysis.Setting) string {
+	if corner == nil {
+		return ""
+	}
+	point := &c.Design.Nominal.Circuit
+	input, load := point.InputVoltage, point.LoadCurrent
+	var rest []string
+	for _, s := range corner {
+		switch s.Path {
+		case "input-voltage":
+			input = s.Value
+		case "load.current":
+			load = s.Value
+		default:
+			if words := c.deviation(s); words != "" {
+				rest = append(rest, words)
+			}
+		}
+	}
+	all := append([]string{number(input, "V") + " in", number(load, "A")}, rest...)
+	return strings.Join(all, ", ")
+}
+
+// deviation words one setting, "" when it is nominal.
+func (c *Case) deviation(s analysis.Setting) string {
+	nominal, unit, isRange := c.nominalOf(s.Path)
+	if math.Abs(s.Value-nominal) <= 1e-9*math.Abs(nominal) {
+		return ""
+	}
+	label := pathWords(s.Path)
+	if isRange || nominal == 0 {
+		return label + " " + number(s.Value, unit)
+	}
+	change := 100 * (s.Value/nominal - 1)
+	sign := "+"
+	if change < 0 {
+		sign = "−"
+	}
+	return fmt.Sprintf("%s %s%s %%", label, sign, strconv.FormatFloat(roundTo3(math.Abs(change)), 'f', -1, 64))
+}
+
+// nominalOf finds a path's nominal value and unit, and whether the file writes it as a range.
+func (c *Case) nominalOf(path string) (nominal float64, unit string, isRange bool) {
+	if q, ok := c.Spec.Quantity(pointerOf(path)); ok {
+		isRange = q.Node != nil && q.Node.Kind == schema.Mapping && (q.Node.Get("min") != nil || q.Node.Get("max") != nil)
+		return q.Nominal, q.Unit, isRange
+	}
+	for _, axis := range c.Design.Axes {
+		if axis.Path == path {
+			return axis.Nominal, "", false
+		}
+	}
+	point := c.Design.Nominal
+	if field := analysis.Field(&point, path); field != nil {
+		return *field, "", false
+	}
+	return math.NaN(), "", false
+}
+
+// pathWords names a field of a corner: "inductance", "ESR", "second inductor's inductance", "feedback resistor".
+func pathWords(path string) string {
+	steps := strings.Split(path, ".")
+	label := spaced(steps[len(steps)-1])
+	if label == "esr" {
+		label = "ESR"
+	}
+	if item, err := strconv.Atoi(label); err == nil && len(steps) > 1 {
+		label = fmt.Sprintf("%s %d", spaced(steps[len(steps)-2]), item+1)
+	}
+	switch owner := steps[0]; owner {
+	case "inductor", "output-capacitor", "compensator", "modulator", "input-voltage":
+		return label
+	case "output-capacitors":
+		if bank, err := strconv.Atoi(steps[1]); err == nil {
+			return fmt.Sprintf("%s of bank %d", label, bank+1)
+		}
+		return label
+	default:
+		if len(steps) == 1 {
+			return label
+		}
+		return spaced(owner) + "'s " + label
+	}
+}
+
+// roundTo3 rounds to three significant digits.
+func roundTo3(value float64) float64 {
+	if value == 0 {
+		return 0
+	}
+	scale := math.Pow(10, 2-math.Floor(math.Log10(math.Abs(value))))
+	return math.Round(value*scale) / scale
+}
