@@ -1,0 +1,151 @@
+package main
+
+import (
+	"fmt"
+	"io"
+	"strings"
+
+	"github.com/spf13/cobra"
+
+	"halfplane/report"
+	"halfplane/rules"
+	"halfplane/workspace"
+)
+
+// checkCommand is the gate.
+type checkCommand struct {
+	*analysisFlags
+	*formFlags
+	failAt        *choice
+	only, without []string
+	quiet         bool
+}
+
+func newCheck() *cobra.Command {
+	c := &checkCommand{}
+	cmd := &cobra.Command{
+		Use:   "check [PATH…]",
+		Short: "Read, analyse and judge designs; exit 1 when a finding reaches the gate",
+		Long: `check reads every design named, and every design and shared file in the folders named (default: the working folder),
+analyses its loop over all corners, and prints what it finds as file:line:column: severity: message.
+
+Folders are searched for NAME.converter.yaml, .yml and .json and for the files that designs share, without hidden
+folders and what ignore files leave out; a file that is named is always read.
+
+Exit status: 0 nothing at or above the gate; 1 a finding at or above it; 2 wrong usage, or a file that could not be
+read, parsed or validated; 3 a defect of the program itself. When several apply, the highest.`,
+		Example: `  halfplane check
+  halfplane check shelf/ --fail-at warning
+  halfplane check shelf/beacon.converter.yaml --as json
+  halfplane check shelf/ --as json --to findings.json --as text`,
+		RunE: func(cmd *cobra.Command, args []string) error { return c.run(cmd, args) },
+	}
+	c.formFlags = addFormFlags(cmd)
+	c.failAt = addChoice(cmd, "fail-at", "error", "least severity that makes the exit status 1", "error", "warning", "note", "never")
+	cmd.Flags().StringSliceVar(&c.only, "only", nil, "these rules only (`RULE,…`); what keeps a file from being read is always reported")
+	cmd.Flags().StringSliceVar(&c.without, "without", nil, "all rules but these (`RULE,…`)")
+	cmd.Flags().BoolVar(&c.quiet, "quiet", false, "findings only, no line of totals")
+	c.analysisFlags = addAnalysisFlags(cmd)
+	cobra.CheckErr(cmd.RegisterFlagCompletionFunc("only", completeRules))
+	cobra.CheckErr(cmd.RegisterFlagCompletionFunc("without", completeRules))
+	return cmd
+}
+
+func (c *checkCommand) run(cmd *cobra.Command, args []string) error {
+	outputs, err := c.outputs()
+	if err != nil {
+		return err
+	}
+	if err := c.checkFlags(); err != nil {
+		return err
+	}
+	if len(args) == 0 {
+		args = []string{"."}
+	}
+	code := clean
+	items, err := workspace.Find(args, c.root)
+	if err != nil {
+		fmt.Fprintf(cmd.ErrOrStderr(), "halfplane: %v\n", err)
+		code = usage
+	}
+	if len(items) == 0 && err == nil {
+		fmt.Fprintf(cmd.ErrOrStderr(), "halfplane: there is no spec file (NAME.converter.yaml) in %s\n", strings.Join(args, ", "))
+	}
+	writers, sinks := c.writers(outputs, cmd.OutOrStdout())
+	workspace.Each(cmd.Context(), items, c.options(), func(f workspace.File) {
+		code = max(code, c.statusOf(f))
+		for _, w := range writers {
+			w.File(f)
+		}
+	})
+	for i, w := range writers {
+		if err := w.Close(); err != nil {
+			return err
+		}
+		if err := sinks[i].close(); err != nil {
+			return err
+		}
+	}
+	if code != clean {
+		return exit{code}
+	}
+	return nil
+}
+
+func (c *checkCommand) checkFlags() error {
+	if err := c.analysisFlags.check(); err != nil {
+		return err
+	}
+	if err := ruleNames("only", c.only); err != nil {
+		return err
+	}
+	return ruleNames("without", c.without)
+}
+
+func (c *checkCommand) options() workspace.Options {
+	return workspace.Options{
+		Rules: rules.RunOptions{Only: c.only, Without: c.without},
+		Depth: c.depthOf(),
+		Jobs:  c.jobs,
+	}
+}
+
+// statusOf is the status that one file asks for.
+func (c *checkCommand) statusOf(f workspace.File) status {
+	switch {
+	case f.Defect:
+		return defect
+	case f.Status == workspace.Unreadable:
+		return usage
+	}
+	gate := map[string]rules.Severity{"error": rules.Error, "warning": rules.Warning, "note": rules.Note}
+	least, any := gate[c.failAt.value]
+	for _, finding := range f.Findings {
+		if any && finding.Severity >= least {
+			return found
+		}
+	}
+	return clean
+}
+
+// findingsWriter takes findings file by file.
+type findingsWriter interface {
+	File(workspace.File)
+	Close() error
+}
+
+func (c *checkCommand) writers(outputs []output, stdout io.Writer) (writers []findingsWriter, sinks []sink) {
+	for _, o := range outputs {
+		s := o.open(stdout)
+		sinks = append(sinks, s)
+		switch o.form {
+		case "json":
+			writers = append(writers, report.NewJSON(s, version))
+		default:
+			writers = append(writers, report.NewText(s, report.TextOptions{
+				Color: s.held == nil && colored(c.color.value, stdout), NoSummary: c.quiet,
+			}))
+		}
+	}
+	return writers, sinks
+}

@@ -1,0 +1,158 @@
+package main
+
+import (
+	"fmt"
+	"os"
+	"slices"
+	"strings"
+
+	"github.com/spf13/cobra"
+
+	"halfplane/analysis"
+	"halfplane/rules"
+)
+
+// choice is a flag that takes one of a few words.
+type choice struct {
+	value   string
+	allowed []string
+}
+
+func (c *choice) String() string { return c.value }
+func (c *choice) Type() string   { return strings.Join(c.allowed, "|") }
+
+// Set refuses every other word.
+func (c *choice) Set(s string) error {
+	if !slices.Contains(c.allowed, s) {
+		return fmt.Errorf("expects %s", either(c.allowed))
+	}
+	c.value = s
+	return nil
+}
+
+// either is "a, b or c".
+func either(words []string) string {
+	if len(words) == 1 {
+		return words[0]
+	}
+	return strings.Join(words[:len(words)-1], ", ") + " or " + words[len(words)-1]
+}
+
+// addChoice declares such a flag with its completion.
+func addChoice(cmd *cobra.Command, name, value, help string, allowed ...string) *choice {
+	c := &choice{value, allowed}
+	cmd.Flags().Var(c, name, help)
+	cobra.CheckErr(cmd.RegisterFlagCompletionFunc(name, cobra.FixedCompletions(allowed, cobra.ShellCompDirectiveNoFileComp)))
+	return c
+}
+
+// analysisFlags are shared by the commands that analyse files.
+type analysisFlags struct {
+	depth *choice
+	color *choice
+	jobs  int
+	root  string
+}
+
+func addAnalysisFlags(cmd *cobra.Command) *analysisFlags {
+	f := &analysisFlags{
+		depth: addChoice(cmd, "depth", "full", "how many corners: quick (operating corners and the extremes of the power stage) or full (every extreme of every part, then refined)", "quick", "full"),
+		color: addChoice(cmd, "color", "auto", "colours on standard output; auto: on a terminal, unless NO_COLOR is set", "auto", "always", "never"),
+	}
+	cmd.Flags().IntVar(&f.jobs, "jobs", 0, "analyses at once; 0: as many as the machine runs")
+	cmd.Flags().StringVar(&f.root, "root", "", "`FOLDER` that references between files may not leave (default: the git work tree, else the outermost folder with a halfplane.yaml, else the folder named)")
+	return f
+}
+
+func (f *analysisFlags) check() error {
+	if f.jobs < 0 {
+		return fmt.Errorf("--jobs expects a number from 0 upwards, not %d", f.jobs)
+	}
+	if f.root == "" {
+		return nil
+	}
+	if info, err := os.Stat(f.root); err != nil || !info.IsDir() {
+		return fmt.Errorf("--root: there is no folder %s", f.root)
+	}
+	return nil
+}
+
+func (f *analysisFlags) depthOf() analysis.Depth {
+	if f.depth.value == "quick" {
+		return analysis.Quick
+	}
+	return analysis.Full
+}
+
+// colored decides --color for a stream.
+func colored(when string, stream any) bool {
+	if when != "auto" {
+		return when == "always"
+	}
+	file, ok := stream.(*os.File)
+	if !ok || os.Getenv("NO_COLOR") != "" || os.Getenv("TERM") == "dumb" {
+		return false
+	}
+	info, err := file.Stat()
+	return err == nil && info.Mode()&os.ModeCharDevice != 0
+}
+
+// ruleNames checks the names given to --only or --without.
+func ruleNames(flag string, names []string) error {
+	for _, name := range names {
+		if rules.Find(name) == nil {
+			return fmt.Errorf("--%s: there is no rule %q%s", flag, name, suggest(name))
+		}
+	}
+	return nil
+}
+
+// suggest names the rule that was probably meant.
+func suggest(name string) string {
+	best, least := "", len(name)/2+1
+	for _, r := range rules.All() {
+		if d := distance(name, r.Name); d < least {
+			best, least = r.Name, d
+		}
+	}
+	if best == "" {
+		return " ('halfplane rule' lists them)"
+	}
+	return fmt.Sprintf("; did you mean %q?", best)
+}
+
+// distance counts the insertions, deletions, replacements and swaps of neighbours between two words (Damerau 1964,
+// restricted to one edit per place).
+func distance(a, b string) int {
+	x, y := []rune(a), []rune(b)
+	rows := make([][]int, len(x)+1)
+	for i := range rows {
+		rows[i] = make([]int, len(y)+1)
+		rows[i][0] = i
+	}
+	for j := range rows[0] {
+		rows[0][j] = j
+	}
+	for i := 1; i <= len(x); i++ {
+		for j := 1; j <= len(y); j++ {
+			replace := 1
+			if x[i-1] == y[j-1] {
+				replace = 0
+			}
+			rows[i][j] = min(rows[i-1][j]+1, rows[i][j-1]+1, rows[i-1][j-1]+replace)
+			if i > 1 && j > 1 && x[i-1] == y[j-2] && x[i-2] == y[j-1] {
+				rows[i][j] = min(rows[i][j], rows[i-2][j-2]+1)
+			}
+		}
+	}
+	return rows[len(x)][len(y)]
+}
+
+// completeRules offers the rules' names.
+func completeRules(*cobra.Command, []string, string) ([]string, cobra.ShellCompDirective) {
+	var names []string
+	for _, r := range rules.All() {
+		names = append(names, r.Name+"\t"+r.Sentence)
+	}
+	return names, cobra.ShellCompDirectiveNoFileComp
+}

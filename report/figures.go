@@ -1,0 +1,302 @@
+package report
+
+import (
+	"io"
+	"math"
+
+	"halfplane/analysis"
+	"halfplane/analysis/loop"
+	"halfplane/analysis/plant"
+	"halfplane/workspace"
+)
+
+// FigureOptions say which figures of an analysis are written.
+type FigureOptions struct {
+	AllCorners bool             // every point analysed, instead of the operating corners and those that a worst figure refers to
+	At         *analysis.Corner // this one point only; there is no worst of one point
+	Color      bool             // text only
+}
+
+// JSONFigures writes the figures of one analysed design (schema: FiguresSchema).
+func JSONFigures(w io.Writer, f workspace.File, o FigureOptions) error {
+	return encode(w, figuresOf(f, o))
+}
+
+type figuresDocument struct {
+	Design              string      `json:"design"`
+	Title               string      `json:"title"`
+	Topology            string      `json:"topology"`
+	TurnsRatio          figure      `json:"turns-ratio"`
+	EffectiveInductance extent      `json:"effective-inductance"`
+	Corners             []cornerOut `json:"corners"`
+	Worst               any         `json:"worst"`
+	Method              string      `json:"method"`
+}
+
+type extent struct {
+	Min     figure `json:"min"`
+	Nominal figure `json:"nominal"`
+	Max     figure `json:"max"`
+}
+
+type cornerOut struct {
+	At              settings        `json:"at"`
+	Mode            *string         `json:"mode"`
+	Duty            figure          `json:"duty"`
+	InductorCurrent figure          `json:"inductor-current"`
+	InductorRipple  figure          `json:"inductor-ripple"`
+	SecondCurrent   *figure         `json:"second-inductor-current,omitempty"`
+	SecondRipple    *figure         `json:"second-inductor-ripple,omitempty"`
+	Stage           stageOut        `json:"stage"`
+	Plant           *plantOut       `json:"plant"`
+	Ideal           *idealOut       `json:"ideal,omitempty"`
+	DutyPeak        *figure         `json:"duty-peak,omitempty"`
+	CurrentLoop     *currentLoopOut `json:"current-loop,omitempty"`
+	InputFilter     *inputFilterOut `json:"input-filter,omitempty"`
+	Loop            *loopOut        `json:"loop"`
+}
+
+type stageOut struct {
+	Inductance  figure `json:"inductance"`
+	Capacitance figure `json:"capacitance"`
+	ESR         figure `json:"esr"`
+}
+
+type plantOut struct {
+	ControlGain figure      `json:"control-gain"`
+	LineGain    figure      `json:"line-gain"`
+	Resonance   figure      `json:"resonance"`
+	Quality     figure      `json:"quality"`
+	ESRZero     figure      `json:"esr-zero"`
+	RHPZero     figure      `json:"rhp-zero"`
+	Poles       [][2]figure `json:"poles"`
+	Zeros       [][2]figure `json:"zeros"`
+}
+
+type idealOut struct {
+	Duty        figure `json:"duty"`
+	ControlGain figure `json:"control-gain"`
+	LineGain    figure `json:"line-gain"`
+	Resonance   figure `json:"resonance"`
+	Quality     figure `json:"quality"`
+	ESRZero     figure `json:"esr-zero"`
+	RHPZero     figure `json:"rhp-zero"`
+}
+
+type currentLoopOut struct {
+	OnSlope              figure `json:"on-slope"`
+	ExternalSlope        figure `json:"external-slope"`
+	SlopeRatio           figure `json:"slope-ratio"`
+	HalfFrequencyQuality figure `json:"half-frequency-quality"`
+}
+
+type inputFilterOut struct {
+	ZoOverZn figure `json:"zo-over-zn"`
+	ZoOverZd figure `json:"zo-over-zd"`
+	Quality  figure `json:"quality"`
+}
+
+type loopOut struct {
+	Crossover           figure   `json:"crossover"`
+	Crossovers          []figure `json:"crossovers"`
+	PhaseMargin         figure   `json:"phase-margin"`
+	GainMargin          figure   `json:"gain-margin"`
+	GainReductionMargin *figure  `json:"gain-reduction-margin,omitempty"`
+	ModulusMargin       figure   `json:"modulus-margin"`
+	Stable              bool     `json:"stable"`
+	WithRipple          *loopOut `json:"with-ripple,omitempty"`
+}
+
+func figuresOf(f workspace.File, o FigureOptions) figuresDocument {
+	chosen := choose(f.Result, o)
+	out := figuresDocument{
+		Design:   clean(f.Path),
+		Title:    f.Spec.Text("/title"),
+		Topology: f.Spec.Text("/topology"),
+		Worst:    worstOf(f.Result, chosen.index),
+		Method:   f.Result.Method,
+	}
+	if o.At != nil {
+		out.Worst, out.Method = nil, "one point, as assigned"
+	}
+	low, nominal, high, turns := stageExtent(f.Spec.Design())
+	out.EffectiveInductance = extent{figure(low), figure(nominal), figure(high)}
+	out.TurnsRatio = figure(turns)
+	for _, c := range chosen.corners {
+		out.Corners = append(out.Corners, cornerOf(c))
+	}
+	return out
+}
+
+// selection is the corners to write and, for an index into the result, the index among them.
+type selection struct {
+	corners []*analysis.Corner
+	index   map[int]int
+}
+
+// choose takes nominal first, the operating corners, then every corner that a worst figure refers to.
+func choose(r *analysis.Result, o FigureOptions) selection {
+	s := selection{index: map[int]int{}}
+	if o.At != nil {
+		s.corners = []*analysis.Corner{o.At}
+		return s
+	}
+	take := func(i int) {
+		if _, have := s.index[i]; !have && i >= 0 && i < len(r.Corners) {
+			s.index[i] = len(s.corners)
+			s.corners = append(s.corners, &r.Corners[i])
+		}
+	}
+	last := r.Operating // nominal, then so many operating corners
+	if o.AllCorners {
+		last = len(r.Corners) - 1
+	}
+	for i := 0; i <= last; i++ {
+		take(i)
+	}
+	for _, e := range worstEntries(&r.Worst) {
+		take(e.worst.Corner)
+	}
+	return s
+}
+
+type worstEntry struct {
+	key   string
+	worst analysis.Worst
+}
+
+// worstEntries lists the worst figures that have a corner, in the order of the output.
+func worstEntries(w *analysis.Worsts) []worstEntry {
+	return []worstEntry{
+		{"phase-margin", w.PhaseMargin},
+		{"gain-margin", w.GainMargin},
+		{"gain-reduction-margin", w.GainReductionMargin},
+		{"modulus-margin", w.ModulusMargin},
+		{"rhp-zero", w.RHPZero},
+		{"crossover", w.Crossover},
+		{"crossover-low", w.CrossoverLow},
+		{"crossover-over-rhp-zero", w.CrossoverOverRHPZero},
+	}
+}
+
+func worstOf(r *analysis.Result, index map[int]int) object {
+	var out object
+	for _, e := range worstEntries(&r.Worst) {
+		if e.worst.Corner < 0 || math.IsNaN(e.worst.Value) {
+			if e.key != "gain-reduction-margin" { // only a conditionally stable loop has one
+				out = append(out, member{e.key, nil})
+			}
+			continue
+		}
+		out = append(out, member{e.key, object{{"value", figure(e.worst.Value)}, {"corner", index[e.worst.Corner]}}})
+	}
+	var spread any
+	if ratio := r.Worst.HighestCrossoverOverLowestRHPZero; !math.IsNaN(ratio) {
+		spread = object{{"value", figure(ratio)}}
+	}
+	return append(out, member{"highest-crossover-over-lowest-rhp-zero", spread})
+}
+
+func cornerOf(c *analysis.Corner) cornerOut {
+	out := cornerOut{
+		At: settings(c.At), Duty: none, InductorCurrent: none, InductorRipple: none, Stage: stageOut{none, none, none},
+		Ideal: idealOf(c.Ideal),
+	}
+	if out.Ideal != nil {
+		out.DutyPeak = pointer(c.DutyPeak)
+	}
+	if !c.Reached {
+		return out
+	}
+	p := &c.Plant
+	mode := p.Mode.String()
+	out.Mode = &mode
+	out.Duty, out.InductorCurrent, out.InductorRipple = figure(p.Duty), figure(p.InductorCurrent), figure(p.InductorRipple)
+	if !math.IsNaN(p.SecondCurrent) {
+		out.SecondCurrent, out.SecondRipple = pointer(p.SecondCurrent), pointer(p.SecondRipple)
+	}
+	out.Stage = stageOut{figure(p.StageInductance), figure(p.StageCapacitance), figure(p.StageESR)}
+	if i := p.Current; i != nil {
+		out.CurrentLoop = &currentLoopOut{figure(i.OnSlope), figure(i.ExternalSlope), figure(i.SlopeRatio), figure(i.HalfFrequencyQuality)}
+	}
+	if i := p.Input; i != nil {
+		out.InputFilter = &inputFilterOut{figure(i.ZoOverZn), figure(i.ZoOverZd), figure(i.Quality)}
+	}
+	if !p.HasModel {
+		return out
+	}
+	out.Plant = &plantOut{
+		figure(p.ControlGain), figure(p.LineGain), figure(p.Resonance), figure(p.Quality), figure(p.ESRZero), figure(p.RHPZero),
+		roots(p.Control.Poles, p.Control.Integrators), roots(p.Control.Zeros, -p.Control.Integrators),
+	}
+	if out.Loop = loopOf(c.Loop); out.Loop != nil {
+		out.Loop.WithRipple = loopOf(c.Ripple)
+	}
+	return out
+}
+
+func loopOf(l *loop.Figures) *loopOut {
+	if l == nil {
+		return nil
+	}
+	out := &loopOut{
+		Crossover: figure(l.Crossover), Crossovers: []figure{}, PhaseMargin: figure(l.PhaseMargin), GainMargin: figure(l.GainMargin),
+		ModulusMargin: figure(l.ModulusMargin), Stable: l.Stable,
+	}
+	for _, hz := range l.Crossovers {
+		out.Crossovers = append(out.Crossovers, figure(hz))
+	}
+	if !math.IsNaN(l.GainReductionMargin) {
+		out.GainReductionMargin = pointer(l.GainReductionMargin)
+	}
+	return out
+}
+
+// idealOf is nil for a corner whose closed forms were not computed.
+func idealOf(i plant.Ideal) *idealOut {
+	if i == (plant.Ideal{}) {
+		return nil
+	}
+	return &idealOut{figure(i.Duty), figure(i.ControlGain), figure(i.LineGain), figure(i.Resonance), figure(i.Quality), figure(i.ESRZero), figure(i.RHPZero)}
+}
+
+// roots are pairs of real and imaginary part in rad/s, those at the origin first.
+func roots(of []complex128, atOrigin int) [][2]figure {
+	out := [][2]figure{}
+	for range max(0, atOrigin) {
+		out = append(out, [2]figure{0, 0})
+	}
+	for _, r := range of {
+		out = append(out, [2]figure{figure(real(r)), figure(imag(r))})
+	}
+	return out
+}
+
+// none is a figure that does not exist.
+var none = figure(math.NaN())
+
+func pointer(v float64) *figure {
+	f := figure(v)
+	return &f
+}
+
+// stageExtent gives the effective inductance of one phase on the output-filter side, over the spread of the windings, and
+// the turns ratio. An inductance in parallel grows with each of its parts, so the extremes lie where all are at theirs.
+func stageExtent(d *analysis.Design) (low, nominal, high, turns float64) {
+	at := func(pick func(analysis.Axis) float64) plant.Stage {
+		point := d.Nominal
+		for _, axis := range d.Axes {
+			if axis.Path == "inductor.inductance" || axis.Path == "second-inductor.inductance" {
+				if field := analysis.Field(&point, axis.Path); field != nil {
+					*field = pick(axis)
+				}
+			}
+		}
+		return plant.Reflect(&point.Circuit)
+	}
+	middle := at(func(a analysis.Axis) float64 { return a.Nominal })
+	least := at(func(a analysis.Axis) float64 { return a.Min })
+	most := at(func(a analysis.Axis) float64 { return a.Max })
+	phases := middle.Phases // a stage holds all phases as one
+	return least.Inductance * phases, middle.Inductance * phases, most.Inductance * phases, middle.Turns
+}

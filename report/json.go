@@ -1,0 +1,217 @@
+package report
+
+import (
+	"encoding/json"
+	"io"
+	"math"
+	"path/filepath"
+
+	"halfplane/analysis"
+	"halfplane/rules"
+	"halfplane/schema"
+	"halfplane/workspace"
+)
+
+// Program is the name that the outputs carry.
+const Program = "halfplane"
+
+// JSONFindings writes the findings of the files as one JSON document (schema: FindingsSchema).
+func JSONFindings(w io.Writer, files []workspace.File, version string) error {
+	j := NewJSON(w, version)
+	for _, f := range files {
+		j.File(f)
+	}
+	return j.Close()
+}
+
+// JSON gathers findings file by file; Close writes the document.
+type JSON struct {
+	w      io.Writer
+	out    findingsDocument
+	totals Totals
+}
+
+// NewJSON starts a report of the given program version.
+func NewJSON(w io.Writer, version string) *JSON {
+	return &JSON{w: w, out: findingsDocument{Program: Program, Version: version, Files: []fileOut{}}}
+}
+
+// File adds one file's findings.
+func (j *JSON) File(f workspace.File) {
+	j.totals.Add(f)
+	out := fileOut{Path: clean(f.Path), Status: f.Status.String(), Findings: []findingOut{}}
+	for _, found := range f.Findings {
+		out.Findings = append(out.Findings, shape(found))
+	}
+	j.out.Files = append(j.out.Files, out)
+}
+
+// Close writes the document.
+func (j *JSON) Close() error {
+	j.out.Summary = j.totals
+	return encode(j.w, j.out)
+}
+
+type findingsDocument struct {
+	Program string    `json:"program"`
+	Version string    `json:"version"`
+	Files   []fileOut `json:"files"`
+	Summary Totals    `json:"summary"`
+}
+
+type fileOut struct {
+	Path     string       `json:"path"`
+	Status   string       `json:"status"`
+	Findings []findingOut `json:"findings"`
+}
+
+type findingOut struct {
+	Rule     string       `json:"rule"`
+	Severity string       `json:"severity"`
+	Message  string       `json:"message"`
+	Pointer  string       `json:"pointer"`
+	Range    rangeOut     `json:"range"`
+	Corner   settings     `json:"corner,omitempty"`
+	Measured *numberOut   `json:"measured,omitempty"`
+	Limit    *numberOut   `json:"limit,omitempty"`
+	Nominal  *numberOut   `json:"nominal,omitempty"`
+	Formula  string       `json:"formula,omitempty"`
+	Related  []relatedOut `json:"related,omitempty"`
+	Cause    *causeOut    `json:"cause,omitempty"`
+}
+
+type rangeOut struct {
+	Start positionOut `json:"start"`
+	End   positionOut `json:"end"`
+}
+
+type positionOut struct {
+	Line   int `json:"line"`
+	Column int `json:"column"`
+}
+
+type numberOut struct {
+	Value float64 `json:"value"`
+	Unit  string  `json:"unit"`
+}
+
+type relatedOut struct {
+	Path    string   `json:"path"`
+	Pointer string   `json:"pointer"`
+	Range   rangeOut `json:"range"`
+	Message string   `json:"message"`
+}
+
+type causeOut struct {
+	Rule    string `json:"rule"`
+	Pointer string `json:"pointer"`
+}
+
+func shape(f rules.Finding) findingOut {
+	out := findingOut{
+		Rule:     f.Rule,
+		Severity: f.Severity.String(),
+		Message:  f.Message,
+		Pointer:  f.Pointer,
+		Range:    place(f.Doc, f.Start, f.End),
+		Corner:   settings(f.Corner),
+		Measured: number(f.Measured),
+		Limit:    number(f.Limit),
+		Nominal:  number(f.Nominal),
+		Formula:  f.Formula,
+	}
+	for _, r := range f.Related {
+		out.Related = append(out.Related, relatedOut{
+			Path: nameOf(r.Doc), Pointer: r.Pointer, Range: place(r.Doc, r.Start, r.End), Message: r.Message,
+		})
+	}
+	if f.Cause != nil {
+		out.Cause = &causeOut{f.Cause.Rule, f.Cause.Pointer}
+	}
+	return out
+}
+
+// place is a byte range in code points from 1; without a text it is the file's first position.
+func place(doc *schema.Document, start, end int) rangeOut {
+	if doc == nil {
+		return rangeOut{positionOut{1, 1}, positionOut{1, 1}}
+	}
+	a, b := doc.Position(start), doc.Position(end)
+	return rangeOut{positionOut{a.Line, a.Column}, positionOut{b.Line, b.Column}}
+}
+
+func nameOf(doc *schema.Document) string {
+	if doc == nil {
+		return ""
+	}
+	return clean(doc.Name)
+}
+
+// clean is a path with '/' between its parts.
+func clean(path string) string { return filepath.ToSlash(path) }
+
+// number leaves out what JSON cannot hold: a figure that does not exist has no key.
+func number(n *rules.Number) *numberOut {
+	if n == nil || math.IsNaN(n.Value) || math.IsInf(n.Value, 0) {
+		return nil
+	}
+	return &numberOut{n.Value, n.Unit}
+}
+
+// settings is an assignment of spec fields; as JSON an object in the order of the design's own axes.
+type settings []analysis.Setting
+
+// MarshalJSON keeps the order, which a map would lose.
+func (s settings) MarshalJSON() ([]byte, error) {
+	o := make(object, 0, len(s))
+	for _, at := range s {
+		o = append(o, member{at.Path, figure(at.Value)})
+	}
+	return o.MarshalJSON()
+}
+
+// object is a JSON object whose members keep their order.
+type object []member
+
+type member struct {
+	key   string
+	value any
+}
+
+// MarshalJSON writes the members in their order.
+func (o object) MarshalJSON() ([]byte, error) {
+	out := []byte{'{'}
+	for i, m := range o {
+		if i > 0 {
+			out = append(out, ',')
+		}
+		key, err := json.Marshal(m.key)
+		if err != nil {
+			return nil, err
+		}
+		value, err := json.Marshal(m.value)
+		if err != nil {
+			return nil, err
+		}
+		out = append(append(append(out, key...), ':'), value...)
+	}
+	return append(out, '}'), nil
+}
+
+// figure is a number that may not exist: NaN and the infinities become null.
+type figure float64
+
+// MarshalJSON writes null where there is no finite number.
+func (f figure) MarshalJSON() ([]byte, error) {
+	if math.IsNaN(float64(f)) || math.IsInf(float64(f), 0) {
+		return []byte("null"), nil
+	}
+	return json.Marshal(float64(f))
+}
+
+func encode(w io.Writer, v any) error {
+	e := json.NewEncoder(w)
+	e.SetEscapeHTML(false)
+	e.SetIndent("", "  ")
+	return e.Encode(v)
+}

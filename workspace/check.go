@@ -1,0 +1,99 @@
+package workspace
+
+import (
+	"context"
+	"fmt"
+	"path/filepath"
+	"slices"
+
+	"halfplane/analysis"
+	"halfplane/rules"
+	"halfplane/schema"
+)
+
+// Options say how files are checked.
+type Options struct {
+	Rules    rules.RunOptions
+	Settings rules.Settings
+	Depth    analysis.Depth
+	Jobs     int // at once, over files and corners together; 0: as many as the machine runs
+}
+
+// CheckFile reads, validates, analyses and judges one file. A file that cannot be read has a finding that says so.
+func (w *Workspace) CheckFile(ctx context.Context, path string, o Options) (f File) {
+	defer isolate(&f, filepath.ToSlash(path), nil)
+	if doc := w.overlay(absolute(path)); doc != nil {
+		f = w.CheckDocument(ctx, doc, o)
+		f.Path = filepath.ToSlash(path)
+		return f
+	}
+	text, err := readText(absolute(path))
+	if err != nil {
+		return unreadable(path, err)
+	}
+	return w.CheckDocument(ctx, schema.Read(filepath.ToSlash(path), text, 0), o)
+}
+
+// unreadable is the outcome for a file without text.
+func unreadable(path string, err error) File {
+	doc := schema.Read(filepath.ToSlash(path), nil, 0)
+	problem := schema.Problem{Rule: "spec-syntax", Message: err.Error(), Doc: doc}
+	return File{
+		Path:     doc.Name,
+		Document: doc,
+		Status:   Unreadable,
+		Findings: rules.FromProblems([]schema.Problem{problem}),
+	}
+}
+
+// CheckDocument validates, analyses and judges a text that is at hand. Compensator, parts and policy files are validated
+// on their own. Whatever fails inside the program becomes a finding of the rule `internal` and never a panic.
+func (w *Workspace) CheckDocument(ctx context.Context, doc *schema.Document, o Options) (f File) {
+	f = File{Path: filepath.ToSlash(doc.Name), Document: doc, Status: Checked}
+	defer isolate(&f, f.Path, doc)
+	c, problems, err := w.prepare(ctx, doc, w, o.Settings, analysis.Options{Depth: o.Depth, Jobs: o.Jobs})
+	switch {
+	case len(problems) > 0:
+		f.Status = Unreadable
+		f.Findings = rules.FromProblems(problems)
+	case err != nil && ctx.Err() == nil:
+		f.fails(doc, err.Error())
+	case c != nil:
+		f.Spec, f.Result = c.Spec, c.Result
+		f.Findings = rules.Run(c, always(o.Rules))
+		for _, found := range f.Findings {
+			f.Defect = f.Defect || found.Rule == defect
+		}
+	}
+	return f
+}
+
+// always keeps a choice of rules from hiding that one of them failed inside the program.
+func always(o rules.RunOptions) rules.RunOptions {
+	if len(o.Only) > 0 {
+		o.Only = append(slices.Clone(o.Only), defect)
+	}
+	o.Without = slices.DeleteFunc(slices.Clone(o.Without), func(name string) bool { return name == defect })
+	return o
+}
+
+// defect is the rule under which failures of the program itself are reported.
+const defect = "internal"
+
+// isolate turns a panic of the program into a finding of the one file that it happened on. It is deferred.
+func isolate(f *File, path string, doc *schema.Document) {
+	if cause := recover(); cause != nil {
+		f.Path = path
+		f.fails(doc, fmt.Sprint(cause))
+	}
+}
+
+// fails records a failure of the program itself; the finding stands at the top of the file.
+func (f *File) fails(doc *schema.Document, cause string) {
+	f.Defect = true
+	if f.Status == 0 {
+		f.Status = Unreadable
+	}
+	f.Findings = append(f.Findings, rules.Internal(doc, "the program itself failed on this file: "+cause))
+	rules.Sort(f.Findings)
+}
