@@ -10,49 +10,56 @@ const (
 	ripplePoints    = 512 // of the ripple waveform over one period
 )
 
-// CapacitorRipple is what the output capacitors of a circuit carry at its operating point.
-type CapacitorRipple struct {
-	PieceRMS []float64 // A rms, of one piece of each bank
-	Ripple   float64   // V, peak to peak, of the output voltage; no equivalent series inductance
+// PieceCurrents returns the ripple current (A rms) of one piece of each output capacitor bank of a circuit whose operating point is
+// s. The current into the output node is piecewise linear; its harmonics s_k divide among the banks by their admittances (theory
+// sheet section 16). With N interleaved phases only every N-th harmonic remains. NaN where the operating point is unset.
+func PieceCurrents(c *Circuit, s *Solution) []float64 {
+	wave := outputWave(c, s)
+	pieces := make([]float64, len(c.Banks))
+	for k := c.Phases; k <= rippleHarmonics; k += c.Phases {
+		current := wave.harmonic(k) * complex(float64(c.Phases), 0)
+		total := outputAdmittance(c, s, k)
+		for i := range c.Banks {
+			amps := cmplx.Abs(current * bankAdmittance(c, s, k, i) / total)
+			pieces[i] += 2 * amps * amps
+		}
+	}
+	for i := range pieces {
+		pieces[i] = math.Sqrt(pieces[i]) / c.Banks[i].Count
+	}
+	return pieces
 }
 
-// CapacitorRippleOf returns the ripple currents of the banks and the output ripple of a circuit whose operating point is s.
-// The current into the output node is piecewise linear; its harmonics s_k divide among the banks by their admittances and, with
-// the load's conductance, make the output ripple s_k/Y (theory sheet section 16). With N interleaved phases only every N-th
-// harmonic remains. NaN where the operating point is unset.
-func CapacitorRippleOf(c *Circuit, s *Solution) CapacitorRipple {
-	out := CapacitorRipple{PieceRMS: make([]float64, len(c.Banks))}
+// OutputRipple returns the output voltage's ripple (V, peak to peak) of a circuit whose operating point is s: the span of
+// Σ 2·Re(s_k/Y·e^{jωkt}) (theory sheet section 16). No equivalent series inductance.
+func OutputRipple(c *Circuit, s *Solution) float64 {
 	wave := outputWave(c, s)
-	conductance := 0.0
-	if c.Behaviour == Resistive {
-		conductance = c.LoadCurrent / c.OutputVoltage
-	}
-	squares := make([]float64, len(c.Banks))
-	shares := make([]complex128, len(c.Banks))
 	var volts [rippleHarmonics + 1]complex128
 	for k := c.Phases; k <= rippleHarmonics; k += c.Phases {
-		omega := 2 * math.Pi * float64(k) * s.FilterFrequency
-		current := wave.harmonic(k) * complex(float64(c.Phases), 0)
-		total := complex(conductance, 0)
-		for i := range c.Banks {
-			b := &c.Banks[i]
-			shares[i] = admittance(omega, b.Count*b.Capacitance*derating(b.Derating, c.OutputVoltage), b.ESR/b.Count)
-			total += shares[i]
-		}
-		if c.LoadCapacitance > 0 {
-			total += admittance(omega, c.LoadCapacitance, c.LoadESR)
-		}
-		for i, y := range shares {
-			amps := cmplx.Abs(current * y / total)
-			squares[i] += 2 * amps * amps
-		}
-		volts[k] = current / total
+		volts[k] = wave.harmonic(k) * complex(float64(c.Phases), 0) / outputAdmittance(c, s, k)
 	}
-	for i := range squares {
-		out.PieceRMS[i] = math.Sqrt(squares[i]) / c.Banks[i].Count
+	return peakToPeak(volts[:])
+}
+
+// outputAdmittance is that of all banks, the load's capacitance and its conductance (S, never below zero) at the k-th harmonic.
+func outputAdmittance(c *Circuit, s *Solution, k int) complex128 {
+	var total complex128
+	if c.Behaviour == Resistive {
+		total = complex(c.LoadCurrent/c.OutputVoltage, 0)
 	}
-	out.Ripple = peakToPeak(volts[:])
-	return out
+	for i := range c.Banks {
+		total += bankAdmittance(c, s, k, i)
+	}
+	if c.LoadCapacitance > 0 {
+		total += admittance(2*math.Pi*float64(k)*s.FilterFrequency, c.LoadCapacitance, c.LoadESR)
+	}
+	return total
+}
+
+// bankAdmittance is that of one whole bank (S) at the k-th harmonic.
+func bankAdmittance(c *Circuit, s *Solution, k, bank int) complex128 {
+	b := &c.Banks[bank]
+	return admittance(2*math.Pi*float64(k)*s.FilterFrequency, b.Count*b.Capacitance*derating(b.Derating, c.OutputVoltage), b.ESR/b.Count)
 }
 
 // admittance of a capacitor (F) in series with a resistance (Ω) at omega (rad/s).
@@ -62,14 +69,17 @@ func admittance(omega, capacitance, resistance float64) complex128 {
 
 // peakToPeak is the span of Σ 2·Re(v_k·e^{j2πkx}) over one period.
 func peakToPeak(harmonics []complex128) float64 {
+	var turn [ripplePoints]complex128
+	for p := range turn {
+		sin, cos := math.Sincos(2 * math.Pi * float64(p) / ripplePoints)
+		turn[p] = complex(cos, sin)
+	}
 	low, high := math.Inf(1), math.Inf(-1)
 	for p := range ripplePoints {
 		sum := 0.0
 		for k, v := range harmonics {
-			if v == 0 {
-				continue
-			}
-			sum += 2 * real(v*cmplx.Exp(complex(0, 2*math.Pi*float64(k*p%ripplePoints)/ripplePoints)))
+			w := turn[k*p%ripplePoints]
+			sum += 2 * (real(v)*real(w) - imag(v)*imag(w))
 		}
 		low, high = math.Min(low, sum), math.Max(high, sum)
 	}
