@@ -29,7 +29,7 @@ func TestEveryGoldenCornerOfThePlant(t *testing.T) {
 }
 
 // near asserts a figure within a relative tolerance; a null in the golden file means NaN here.
-func near(t *testing.T, n node, path string, got, tolerance float64) {
+func near(t *testing.T, n tree, path string, got, tolerance float64) {
 	t.Helper()
 	want, ok := figure(n, path)
 	if !ok {
@@ -63,7 +63,7 @@ func compareCorner(t *testing.T, c *Circuit, corner *goldenCorner, out *Solution
 	if _, ok := f["ideal"]; ok { // only the operating corners carry it
 		compareIdeal(t, c, f)
 	}
-	if want, ok := f["current-loop"].(node); ok {
+	if want, ok := f["current-loop"].(tree); ok {
 		require.NotNil(t, out.Current)
 		near(t, want, "on-slope", out.Current.OnSlope, 1e-5)
 		near(t, want, "external-slope", out.Current.ExternalSlope, 1e-8)
@@ -73,7 +73,7 @@ func compareCorner(t *testing.T, c *Circuit, corner *goldenCorner, out *Solution
 	} else {
 		assert.Nil(t, out.Current)
 	}
-	if want, ok := f["input-filter"].(node); ok {
+	if want, ok := f["input-filter"].(tree); ok {
 		require.NotNil(t, out.Input)
 		near(t, want, "zo-over-zn", out.Input.ZoOverZn, 1e-4)
 		near(t, want, "zo-over-zd", out.Input.ZoOverZd, 1e-4)
@@ -82,7 +82,7 @@ func compareCorner(t *testing.T, c *Circuit, corner *goldenCorner, out *Solution
 	}
 }
 
-func compareIdeal(t *testing.T, c *Circuit, f node) {
+func compareIdeal(t *testing.T, c *Circuit, f tree) {
 	ideal := IdealOf(c)
 	near(t, f, "ideal.duty", ideal.Duty, 1e-7)
 	near(t, f, "ideal.control-gain", ideal.ControlGain, 1e-7)

@@ -15,15 +15,15 @@ import (
 
 // The golden designs are read here with a reader for just the notations that they use, so that this package's tests lean on no other.
 
-type node = map[string]any
+type tree = map[string]any
 
 // golden is one file of testdata/reference.
 type golden struct {
 	Name            string
-	Spec            node
+	Spec            tree
 	Corners         []goldenCorner
 	CriticalCurrent float64 `json:"critical-current"`
-	Ripple          node    `json:"ripple-corrected-nominal"`
+	Ripple          tree    `json:"ripple-corrected-nominal"`
 }
 
 type goldenCorner struct {
@@ -31,7 +31,7 @@ type goldenCorner struct {
 	At   map[string]float64
 	Mode string
 	// All other figures, by key.
-	Figures node
+	Figures tree
 }
 
 func (c *goldenCorner) UnmarshalJSON(text []byte) error {
@@ -48,10 +48,10 @@ func (c *goldenCorner) UnmarshalJSON(text []byte) error {
 }
 
 // figure returns a number below dotted keys; ok is false when it is null or absent.
-func figure(n node, path string) (float64, bool) {
+func figure(n tree, path string) (float64, bool) {
 	keys := strings.Split(path, ".")
 	for _, k := range keys[:len(keys)-1] {
-		next, ok := n[k].(node)
+		next, ok := n[k].(tree)
 		if !ok {
 			return 0, false
 		}
@@ -85,7 +85,7 @@ func nominal(t testing.TB, v any) float64 {
 		return 0
 	case float64:
 		return v
-	case node:
+	case tree:
 		if value, ok := v["value"]; ok {
 			return nominal(t, value)
 		}
@@ -112,11 +112,11 @@ func nominal(t testing.TB, v any) float64 {
 	return number
 }
 
-func child(n node, key string) node { c, _ := n[key].(node); return c }
+func child(n tree, key string) tree { c, _ := n[key].(tree); return c }
 
-func text(n node, key string) string { s, _ := n[key].(string); return s }
+func text(n tree, key string) string { s, _ := n[key].(string); return s }
 
-func yes(n node, key string) bool { b, _ := n[key].(bool); return b }
+func yes(n tree, key string) bool { b, _ := n[key].(bool); return b }
 
 func or(v, fallback float64) float64 {
 	if v == 0 {
@@ -126,8 +126,8 @@ func or(v, fallback float64) float64 {
 }
 
 // circuitOf turns a golden spec into its nominal circuit.
-func circuitOf(t testing.TB, spec node) Circuit {
-	q := func(n node, key string) float64 { return nominal(t, n[key]) }
+func circuitOf(t testing.TB, spec tree) Circuit {
+	q := func(n tree, key string) float64 { return nominal(t, n[key]) }
 	topology, ok := ParseTopology(text(spec, "topology"))
 	require.True(t, ok, "%v", spec["topology"])
 	load, turns, inductor := child(spec, "load"), child(spec, "turns"), child(spec, "inductor")
