@@ -1,7 +1,6 @@
 package lsp
 
 import (
-	"fmt"
 	"strings"
 
 	"halfplane/rules"
@@ -37,20 +36,8 @@ func ruleOf(key string) *rules.Rule {
 	return nil
 }
 
-// aboutRule writes a rule's entry in the catalogue.
-func (p *place) aboutRule(r *rules.Rule) {
-	p.title(r.Name, fmt.Sprintf("%v, group %v", r.Severity, r.Group))
-	p.say(r.Sentence)
-	p.formula(r.Formula)
-	var keys []string
-	for _, t := range r.Policy {
-		keys = append(keys, "policy "+t.Key+": "+strings.TrimSpace(fmt.Sprintf("%.4g %s", t.Default, t.Unit)))
-	}
-	p.list(keys)
-	if r.Source != "" {
-		p.say("Source: " + r.Source)
-	}
-}
+// aboutRule writes a rule's page of the catalogue, the one that the command line prints.
+func (p *place) aboutRule(r *rules.Rule) { p.text.WriteString(rules.Page(r)) }
 
 // aboutFinding writes what protects whom here: the rule's sentence, and its formula with this design's numbers put in.
 func (p *place) aboutFinding(f *rules.Finding) {

@@ -6,6 +6,8 @@ import (
 
 	"go.lsp.dev/jsonrpc2"
 	"go.lsp.dev/protocol"
+
+	"halfplane/schema"
 )
 
 // phase is where the connection stands in its life.
@@ -60,15 +62,15 @@ func (s *server) initialize(raw json.RawMessage) (any, error) {
 }
 
 // chosen is the first of the client's position encodings that is known here, UTF-16 without any.
-func chosen(offered []string) encoding {
+func chosen(offered []string) schema.Encoding {
 	for _, name := range offered {
-		for _, e := range []encoding{utf16, utf8s, utf32} {
+		for _, e := range []schema.Encoding{schema.UTF16, schema.UTF8, schema.UTF32} {
 			if name == e.String() {
 				return e
 			}
 		}
 	}
-	return utf16
+	return schema.UTF16
 }
 
 // clientFolders gives the paths of the client's workspace folders, of its root where it names none.

@@ -6,41 +6,24 @@ import (
 	"unicode/utf8"
 
 	"go.lsp.dev/protocol"
+
+	"halfplane/schema"
 )
 
-// encoding is the unit in which client and server count columns.
-type encoding int
-
-const (
-	utf16 encoding = iota + 1 // the protocol's default
-	utf8s
-	utf32
-)
-
-// String gives the protocol's name.
-func (e encoding) String() string {
-	switch e {
-	case utf8s:
-		return string(protocol.PositionEncodingKindUTF8)
-	case utf32:
-		return string(protocol.PositionEncodingKindUTF32)
-	}
-	return string(protocol.PositionEncodingKindUTF16)
-}
-
-// units is how many columns a character takes.
-func (e encoding) units(r rune, size int) uint32 {
+// units is how many columns a character takes in the negotiated encoding.
+func units(e schema.Encoding, r rune, size int) uint32 {
 	switch {
-	case e == utf8s:
+	case e == schema.UTF8:
 		return uint32(size)
-	case e == utf16 && r >= 0x10000:
+	case e == schema.UTF16 && r > 0xffff:
 		return 2
 	}
 	return 1
 }
 
-// text is an immutable text with its line starts: what a change is applied to, before and without any parsing. Lines end
-// at "\n", "\r\n" or a lone "\r", as the protocol says.
+// text is an immutable text with its line starts: what a change is applied to, before and without any parsing, so that a
+// flood of changes costs no tree each. Lines end at "\n", "\r\n" or a lone "\r", as the protocol says. Unlike the columns
+// of a document, those here count a byte-order mark: a client that sent one counts it too.
 type text struct {
 	bytes []byte
 	lines []int // offset of each line's first byte; lines[0] is 0
@@ -88,35 +71,35 @@ func (t *text) line(n int) (start, end int) {
 
 // offset finds the byte at a position. A line past the end is the end of the text, a column past the end of its line is
 // that end, and a column inside a character (half a surrogate pair) is the place after it.
-func (t *text) offset(p position, e encoding) int {
+func (t *text) offset(p position, e schema.Encoding) int {
 	if uint64(p.Line) >= uint64(len(t.lines)) {
 		return len(t.bytes)
 	}
 	at, end := t.line(int(p.Line))
 	for column := uint32(0); at < end && column < p.Character; {
 		r, size := utf8.DecodeRune(t.bytes[at:])
-		column += e.units(r, size)
+		column += units(e, r, size)
 		at += size
 	}
 	return at
 }
 
 // position is the place of a byte; one inside a line ending is the end of the line.
-func (t *text) position(offset int, e encoding) protocol.Position {
+func (t *text) position(offset int, e schema.Encoding) protocol.Position {
 	offset = max(0, min(offset, len(t.bytes)))
 	n := sort.SearchInts(t.lines, offset+1) - 1
 	start, end := t.line(n)
 	column := uint32(0)
 	for at := start; at < min(offset, end); {
 		r, size := utf8.DecodeRune(t.bytes[at:])
-		column += e.units(r, size)
+		column += units(e, r, size)
 		at += size
 	}
 	return protocol.Position{Line: uint32(n), Character: column}
 }
 
 // area is the range of a pair of offsets.
-func (t *text) area(start, end int, e encoding) protocol.Range {
+func (t *text) area(start, end int, e schema.Encoding) protocol.Range {
 	return protocol.Range{Start: t.position(start, e), End: t.position(max(start, end), e)}
 }
 
@@ -129,7 +112,7 @@ func (t *text) replaced(start, end int, with string) *text {
 }
 
 // changed applies content changes one after the other, each to the result of the one before.
-func (t *text) changed(changes []change, e encoding) *text {
+func (t *text) changed(changes []change, e schema.Encoding) *text {
 	for _, c := range changes {
 		if c.Range == nil {
 			t = newText([]byte(*c.Text))

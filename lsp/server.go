@@ -58,7 +58,7 @@ type server struct {
 
 	// Set by initialize and not changed after.
 	can     abilities
-	columns encoding
+	columns schema.Encoding
 
 	calls calls
 
@@ -87,7 +87,7 @@ func serve(ctx context.Context, in io.Reader, out, log io.Writer, o Options, c c
 		ended:   make(chan int, 1),
 		full:    make(chan struct{}, 1),
 		phase:   fresh,
-		columns: utf16,
+		columns: schema.UTF16,
 		desks:   map[string]*desk{},
 		spaces:  map[string]*workspace.Workspace{},
 	}

@@ -50,8 +50,8 @@ func (t settings) page(rule string) string {
 	return t.pages + "#" + rule
 }
 
-// CataloguePage is the name of the catalogue page that is looked for beside the program.
-const CataloguePage = "rules.html"
+// cataloguePages are the names under which the catalogue of rules is looked for beside the program, best first.
+var cataloguePages = []string{"rules.html", "rules.md"}
 
 // installed is the address of the catalogue page beside the program, "" without one.
 func installed() string {
@@ -59,11 +59,13 @@ func installed() string {
 	if err != nil {
 		return ""
 	}
-	page := filepath.Join(filepath.Dir(program), CataloguePage)
-	if info, err := os.Stat(page); err != nil || !info.Mode().IsRegular() {
-		return ""
+	for _, name := range cataloguePages {
+		page := filepath.Join(filepath.Dir(program), name)
+		if info, err := os.Stat(page); err == nil && info.Mode().IsRegular() {
+			return fileAddress(page)
+		}
 	}
-	return fileAddress(page)
+	return ""
 }
 
 // configured takes changed settings and checks every open document anew.
