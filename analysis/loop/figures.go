@@ -13,4 +13,7 @@ type Figures struct {
 	Stable              bool
 	UnstablePlantPoles  int     // open-loop right-half-plane poles
 	DCGain              float64 // |T(0)|, +Inf with an integrator
+
+	PhaseMarginFrequency float64 // the crossover that PhaseMargin belongs to
+	GainMarginFrequency  float64 // the phase crossover that GainMargin belongs to
 }

@@ -1,0 +1,100 @@
+package loop
+
+import (
+	"fmt"
+	"math"
+
+	"halfplane/analysis/transfer"
+)
+
+// Measure writes every figure of the loop gain t into out; out's list is reused. filterFrequency (Hz) sets the range in which
+// crossovers and margins are looked for, 1e−6 to 10 times it; a sampled loop ends at half its sampling frequency.
+// Stability considers all frequencies. Definitions: theory sheet section 8. Errors: a gain, root, delay or frequency that
+// is not usable, and ErrTooInvolved.
+func Measure(t *transfer.Product, filterFrequency float64, out *Figures) error {
+	_, err := measure(t, filterFrequency, out)
+	return err
+}
+
+// measure also says how many times the loop gain was evaluated.
+func measure(t *transfer.Product, filterFrequency float64, out *Figures) (evaluations int, err error) {
+	if !(filterFrequency > 0) || math.IsInf(filterFrequency, 0) {
+		return 0, fmt.Errorf("measuring a loop: filter frequency %v Hz", filterFrequency)
+	}
+	var (
+		sections [24]section
+		slopes   [nodes * perNode]slope
+		free     [2 * nodes]int
+		stack    [nodes]node
+	)
+	k := walker{slopes: slopes[:0], free: free[:0], stack: stack[:0]}
+	k.sections = sections[:0]
+	if err := k.set(t); err != nil {
+		return 0, err
+	}
+	k.crossovers = out.Crossovers[:0]
+	k.first, k.last, k.limit = 2*math.Pi*1e-6*filterFrequency, 2*math.Pi*10*filterFrequency, math.Inf(1)
+	if k.period > 0 {
+		k.limit = math.Pi / k.period
+		k.last = math.Min(k.last, k.limit)
+		k.first = math.Min(k.first, k.last/2)
+	}
+	if k.gain == 0 {
+		k.silent(out)
+		return 0, nil
+	}
+	if err := k.walk(); err != nil {
+		return k.evals, fmt.Errorf("measuring a loop: %w", err)
+	}
+	k.figures(out)
+	return k.evals, nil
+}
+
+// figures turns what the walk found into figures.
+func (k *walker) figures(out *Figures) {
+	const hz, degree = 1 / (2 * math.Pi), 180 / math.Pi
+	for i := range k.crossovers {
+		k.crossovers[i] *= hz
+	}
+	nan := math.NaN()
+	*out = Figures{
+		Crossovers: k.crossovers, Crossover: nan, PhaseMargin: nan, GainMargin: nan, GainReductionMargin: nan,
+		ModulusMargin: k.least, ModulusFrequency: k.leastAt * hz, Stable: k.stable(), UnstablePlantPoles: k.unstable,
+		DCGain: k.dcGain(), PhaseMarginFrequency: nan, GainMarginFrequency: nan,
+	}
+	if n := len(k.crossovers); n > 0 {
+		out.Crossover = k.crossovers[n-1]
+		out.PhaseMargin, out.PhaseMarginFrequency = k.margin*degree, k.marginAt*hz
+		if !out.Stable {
+			out.PhaseMargin = -out.PhaseMargin
+		}
+	}
+	below, above := -decibels(k.below), decibels(k.above)
+	switch {
+	case !out.Stable:
+		if below <= above && !math.IsInf(below, 0) {
+			out.GainMargin, out.GainMarginFrequency = -below, k.belowAt*hz
+		}
+		if above < below {
+			out.GainMargin, out.GainMarginFrequency = -above, k.aboveAt*hz
+		}
+	default:
+		if !math.IsInf(below, 0) {
+			out.GainMargin, out.GainMarginFrequency = below, k.belowAt*hz
+		}
+		if !math.IsInf(above, 0) {
+			out.GainReductionMargin = above
+		}
+	}
+}
+
+// silent gives the figures of T = 0.
+func (k *walker) silent(out *Figures) {
+	nan := math.NaN()
+	*out = Figures{Crossovers: k.crossovers, Crossover: nan, PhaseMargin: nan, GainMargin: nan, GainReductionMargin: nan, ModulusMargin: 1,
+		ModulusFrequency: k.first / (2 * math.Pi), Stable: k.unstable == 0, UnstablePlantPoles: k.unstable, PhaseMarginFrequency: nan,
+		GainMarginFrequency: nan}
+}
+
+// decibels turns ln g into 20·log10 g.
+func decibels(ln float64) float64 { return 20 / math.Ln10 * ln }
