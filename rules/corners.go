@@ -1,8 +1,10 @@
 package rules
 
 import (
+	"encoding/binary"
 	"math"
 	"slices"
+	"strings"
 
 	"halfplane/analysis"
 	"halfplane/analysis/plant"
@@ -20,6 +22,26 @@ func (c *Case) worst(score func(*analysis.Corner) float64) (*analysis.Corner, fl
 		}
 	}
 	return found, highest
+}
+
+// worstStage is worst for a score that the compensator has no part in: of corners that differ in compensator parts only, the
+// first is scored.
+func (c *Case) worstStage(score func(*analysis.Corner) float64) (*analysis.Corner, float64) {
+	seen := make(map[string]bool)
+	var key []byte
+	return c.worst(func(k *analysis.Corner) float64 {
+		key = key[:0]
+		for _, s := range k.At {
+			if !strings.HasPrefix(s.Path, "compensator.") {
+				key = binary.LittleEndian.AppendUint64(key, math.Float64bits(s.Value))
+			}
+		}
+		if seen[string(key)] {
+			return math.NaN()
+		}
+		seen[string(key)] = true
+		return score(k)
+	})
 }
 
 // nominal is the corner at nominal input, load and parts.

@@ -5,11 +5,14 @@ var list = []*Rule{
 	// declared
 	&specSyntax, &specShape, &quantity, &assumedNominal, &turnsRatio, &reflectedInductance, &dividerSetpoint,
 	// operating
-	&dutyRange,
+	&dutyRange, &dutyLatch, &conductionMode, &inductorSaturation, &inductorRipple, &switchVoltage, &rectifierVoltage,
+	&switchCurrent, &capacitorRippleCurrent, &outputRipple,
 	// plant
-	&rhpZeroCrossover, &resonanceCrossover, &switchingCrossover,
+	&rhpZeroCrossover, &crossoverWindow, &resonanceCrossover, &switchingCrossover, &esrZeroSpread, &slopeCompensation,
+	&inputFilter, &inputFilterDamping,
 	// loop
-	&closedLoopStability, &phaseMargin, &gainMargin, &modulusMargin, &crossoverRange,
+	&closedLoopStability, &phaseMargin, &gainMargin, &modulusMargin, &conditionalStability, &severalCrossovers,
+	&crossoverRange, &lowFrequencyGain, &comparatorRipple, &amplifierBandwidth, &samplingDelay, &optocouplerPole,
 	// keeping
 	&notAssessed, &internal,
 }

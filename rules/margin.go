@@ -57,13 +57,10 @@ func (m margin) decide(c *Case) []Finding {
 // unstable is the corner with an unstable closed loop whose phase margin is lowest, nil when every modelled corner is stable.
 func (c *Case) unstable() *analysis.Corner {
 	corner, _ := c.worst(func(k *analysis.Corner) float64 {
-		switch {
-		case !k.Reached || k.Loop == nil || k.Loop.Stable:
+		if !k.Reached || k.Loop == nil || k.Loop.Stable {
 			return math.NaN()
-		case math.IsNaN(k.Loop.PhaseMargin):
-			return -360 // it never crosses one: told when nothing better shows the instability
 		}
-		return -k.Loop.PhaseMargin
+		return unstableScore(k.Loop.PhaseMargin)
 	})
 	return corner
 }
@@ -74,4 +71,12 @@ func loopFigure(k *analysis.Corner, read func(*analysis.Corner) float64) float64
 		return math.NaN()
 	}
 	return read(k)
+}
+
+// unstableScore ranks unstable loops: the lowest phase margin first, those that never cross one last.
+func unstableScore(phaseMargin float64) float64 {
+	if math.IsNaN(phaseMargin) {
+		return -360
+	}
+	return -phaseMargin
 }

@@ -73,6 +73,9 @@ func coincide(a, b slip) bool {
 func slipsOf(c *Case, corner *analysis.Corner, figure statedFigure, got float64) []slip {
 	n := corner.Plant.TurnsRatio
 	circuit := c.point(corner.At).Circuit
+	if circuit.Modulator.Scheme == plant.PeakCurrentMode && strings.HasSuffix(figure.key, "-gain") {
+		figure.ideal = nil // the closed forms are per unit duty, the figure is per control volt
+	}
 	w := workings{circuit: &circuit, figure: figure, got: got, ideal: math.NaN()}
 	if figure.ideal != nil {
 		base := plant.IdealOf(&circuit)

@@ -1,0 +1,91 @@
+package rules
+
+import (
+	"fmt"
+	"math"
+	"strings"
+
+	"halfplane/analysis"
+	"halfplane/analysis/plant"
+)
+
+var conductionMode = Rule{
+	Name:     "conduction-mode",
+	Group:    Operating,
+	Severity: Note,
+	Sentence: "Every corner has the conduction mode that is intended; without an intention, all corners have one mode.",
+	Formula:  "continuous where the load exceeds the critical current, at which the inductor current just touches zero",
+	Source:   "common practice",
+	Example:  "conduction: ccm\nload: {current: {min: 0.1 A, max: 2 A}}   # discontinuous below 0.6 A",
+	Reads:    Operation,
+	Place: func(c *Case) string {
+		if c.Spec.Has("/conduction") && c.Spec.Text("/conduction") != "either" {
+			return "/conduction"
+		}
+		return "/inductor/inductance"
+	},
+	Judges: func(k *analysis.Corner) bool { return k.Reached },
+	Decide: func(c *Case) []Finding {
+		light, heavy := modeExtremes(c)
+		intended := c.Spec.Text("/conduction")
+		var f Finding
+		switch {
+		case intended == "ccm" && light != nil:
+			f = c.atCorner("/conduction", light)
+			f.Severity = Warning
+			f.Message = fmt.Sprintf("continuous conduction is intended, but the inductor current is discontinuous %s", criticalWords(c))
+		case intended == "dcm" && heavy != nil:
+			f = c.atCorner("/conduction", heavy)
+			f.Severity = Warning
+			f.Message = fmt.Sprintf("discontinuous conduction is intended, but the inductor current is continuous above %s", strings.TrimPrefix(criticalWords(c), "below "))
+		case intended != "ccm" && intended != "dcm" && light != nil && heavy != nil:
+			f = c.atCorner("/inductor/inductance", light)
+			f.Message = fmt.Sprintf("both conduction modes occur: discontinuous %s", criticalWords(c))
+		default:
+			return nil
+		}
+		load, critical := c.valueAt(cornerOf(c, f), "load.current"), c.boundary(cornerOf(c, f))
+		f.Formula = fmt.Sprintf("load %s, critical current %s at this corner", number(load, "A"), number(critical, "A"))
+		f.Measured, f.Limit = asNumber(load, "A"), asNumber(critical, "A")
+		f.Nominal = asNumber(c.boundary(c.nominal()), "A")
+		c.relate(&f, "sets the critical current", "/load/current", "/input-voltage", "/inductor/inductance", "/second-inductor/inductance", "/switching-frequency")
+		return []Finding{f}
+	},
+}
+
+// cornerOf is a corner that holds a finding's settings.
+func cornerOf(_ *Case, f Finding) *analysis.Corner { return &analysis.Corner{At: f.Corner} }
+
+// modeExtremes are the first discontinuous corner with the lowest load over critical current, and the first continuous one
+// with the highest; nil where a mode does not occur.
+func modeExtremes(c *Case) (light, heavy *analysis.Corner) {
+	light, _ = c.worst(func(k *analysis.Corner) float64 {
+		if !k.Reached || k.Plant.Mode != plant.Discontinuous {
+			return math.NaN()
+		}
+		return -c.valueAt(k, "load.current")
+	})
+	heavy, _ = c.worst(func(k *analysis.Corner) float64 {
+		if !continuous(k) {
+			return math.NaN()
+		}
+		return c.valueAt(k, "load.current")
+	})
+	return light, heavy
+}
+
+// criticalWords says the load below which each input voltage leaves continuous conduction, with nominal parts.
+func criticalWords(c *Case) string {
+	input := c.axis("input-voltage")
+	var words []string
+	for _, volts := range distinct(input.Min, input.Nominal, input.Max) {
+		load := c.boundary(&analysis.Corner{At: []analysis.Setting{{Path: "input-voltage", Value: volts}}})
+		if !math.IsNaN(load) {
+			words = append(words, number(load, "A")+" at "+number(volts, "V")+" in")
+		}
+	}
+	if len(words) == 0 {
+		return "at the lightest loads"
+	}
+	return "below " + strings.Join(words, ", ")
+}

@@ -1,0 +1,30 @@
+package rules
+
+import (
+	"halfplane/analysis"
+	"halfplane/analysis/plant"
+)
+
+var rectifierBlocks = rating{
+	pointer: "/rectifier/voltage-rating", what: "the rectifier blocks", unit: "V", derate: voltageDerating,
+	of: func(c *Case, k *analysis.Corner) float64 {
+		p := c.point(k.At)
+		return plant.StressOf(&p.Circuit).Rectifier
+	},
+	decided: []string{"/input-voltage", "/output-voltage", "/turns"},
+}
+
+var rectifierVoltage = Rule{
+	Name:     "rectifier-voltage",
+	Group:    Operating,
+	Severity: Error,
+	Sentence: "The rectifier's rating stands clear of the voltage that it blocks at every corner, ringing not counted.",
+	Formula:  "ideal blocking voltage <= voltage-derating * rating (warning), <= rating (error)",
+	Source:   "common practice (volt-second balance of each topology)",
+	Policy:   []Threshold{voltageDerating},
+	Example:  "topology: boost\noutput-voltage: 48 V\nrectifier: {voltage-rating: 40 V}",
+	Reads:    Declaration,
+	Place:    here("/rectifier/voltage-rating"),
+	Applies:  rectifierBlocks.applies,
+	Decide:   rectifierBlocks.decide,
+}

@@ -1,0 +1,30 @@
+package rules
+
+import (
+	"halfplane/analysis"
+	"halfplane/analysis/plant"
+)
+
+var switchBlocks = rating{
+	pointer: "/switch/voltage-rating", what: "the switch blocks", unit: "V", derate: voltageDerating,
+	of: func(c *Case, k *analysis.Corner) float64 {
+		p := c.point(k.At)
+		return plant.StressOf(&p.Circuit).Switch
+	},
+	decided: []string{"/input-voltage", "/output-voltage", "/turns"},
+}
+
+var switchVoltage = Rule{
+	Name:     "switch-voltage",
+	Group:    Operating,
+	Severity: Error,
+	Sentence: "The switch's rating stands clear of the voltage that it blocks at every corner, ringing not counted.",
+	Formula:  "ideal blocking voltage <= voltage-derating * rating (warning), <= rating (error)",
+	Source:   "common practice (volt-second balance of each topology)",
+	Policy:   []Threshold{voltageDerating},
+	Example:  "topology: flyback\ninput-voltage: {min: 36 V, max: 72 V}\nswitch: {voltage-rating: 100 V}   # blocks 108 V",
+	Reads:    Declaration,
+	Place:    here("/switch/voltage-rating"),
+	Applies:  switchBlocks.applies,
+	Decide:   switchBlocks.decide,
+}
