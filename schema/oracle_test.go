@@ -55,7 +55,7 @@ func libraryOutline(n *yaml.Node) string {
 		}
 		return "[" + strings.Join(parts, " ") + "]"
 	}
-	if n.Style&(yaml.SingleQuotedStyle|yaml.DoubleQuotedStyle|yaml.LiteralStyle|yaml.FoldedStyle) == 0 {
+	if n.ShortTag() != "!!str" && n.Style&(yaml.SingleQuotedStyle|yaml.DoubleQuotedStyle|yaml.LiteralStyle|yaml.FoldedStyle) == 0 {
 		switch n.Value {
 		case "", "~", "null", "Null", "NULL":
 			return "null"

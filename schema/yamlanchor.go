@@ -21,12 +21,18 @@ func (r *yamlReader) property(p *yamlProperties) {
 	start := r.pos
 	name := r.word()
 	if name[0] == '!' {
+		if p.tag != "" {
+			r.report(start, r.pos, "a value has one tag, and this is its second")
+		}
 		p.tag, p.tagStart, p.tagEnd = name, start, r.pos
 		return
 	}
 	if len(name) == 1 {
 		r.report(start, r.pos, "a name has to follow '&'")
 		return
+	}
+	if p.anchor != nil {
+		r.report(start, r.pos, "a value has one name for aliases, and this is its second")
 	}
 	if r.anchors == nil {
 		r.anchors = make(map[string]*yamlAnchor)
@@ -45,6 +51,10 @@ func (r *yamlReader) word() string {
 
 // apply gives a value its properties.
 func (r *yamlReader) apply(p *yamlProperties, n *Node) *Node {
+	if n.Alias != nil && (p.tag != "" || p.anchor != nil) {
+		r.report(n.Start, n.End, "an alias takes no tag and no name of its own")
+		return n
+	}
 	if p.tag != "" {
 		r.tag(p, n)
 	}

@@ -6,15 +6,16 @@ import "strings"
 type yamlSlot int
 
 const (
-	atTop    yamlSlot = iota + 1 // the whole document
-	afterKey                     // behind a key's colon: only values of one line, or a list as deep as the key on new lines
-	afterTic                     // behind the dash of a list item, or an explicit key's mark: everything
+	atTop     yamlSlot = iota + 1 // the whole document
+	afterKey                      // behind a key's colon: only values of one line, or a list as deep as the key on new lines
+	afterDash                     // behind the dash of a list item: everything
+	afterMark                     // behind the signs of an explicit key and its value: everything, and a list as deep as they
 )
 
 // value reads what stands at pos or on the lines below it that are indented more than indent. Where nothing is written
 // it is a Null of no length at pos.
 func (r *yamlReader) value(indent int, s yamlSlot) *Node {
-	at, line := r.pos, r.lineStart
+	at, line, bare := r.pos, r.lineStart, -1 // bare is the line with properties alone so far: no structure begins on it
 	if s == atTop {
 		line = -1
 	}
@@ -24,20 +25,23 @@ func (r *yamlReader) value(indent int, s yamlSlot) *Node {
 		if r.end() || !r.belongs(indent, s, line) {
 			return r.apply(&p, r.null(at))
 		}
-		begins := s != afterKey || r.lineStart != line
+		begins := (s != afterKey || r.lineStart != line) && r.lineStart != bare
 		if c := r.peek(); c != '&' && c != '!' || begins && r.keyAhead() {
 			return r.apply(&p, r.content(indent, s, begins, r.lineStart != line))
 		}
 		r.property(&p)
-		at = r.pos
+		at, bare = r.pos, r.lineStart
 	}
 }
 
 // belongs is true when pos stands deep enough for a value below indent. line is the line of the key or dash.
 func (r *yamlReader) belongs(indent int, s yamlSlot, line int) bool {
 	col := r.column()
-	return r.lineStart == line || col > indent || s == afterKey && col == indent && r.dash()
+	return r.lineStart == line || col > indent || evenList(s) && col == indent && r.dash()
 }
+
+// evenList is true where a list may stand as deep as what it belongs to.
+func evenList(s yamlSlot) bool { return s == afterKey || s == afterMark }
 
 // content reads a value at pos. begins tells that block structure may begin here, fresh that it is the line's first.
 func (r *yamlReader) content(indent int, s yamlSlot, begins, fresh bool) *Node {
@@ -48,12 +52,12 @@ func (r *yamlReader) content(indent int, s yamlSlot, begins, fresh bool) *Node {
 			r.report(r.pos, r.pos+1, "a list begins on a line of its own, below its key")
 		}
 		r.tabInside(begins && !fresh)
-		return r.list(col, s == afterKey && col == indent)
+		return r.list(col, evenList(s) && col == indent)
 	case begins && (r.mark('?') || r.keyAhead()):
 		r.tabInside(!fresh)
 		return r.mapping(col)
 	}
-	pos, line, problems := r.pos, r.lineStart, len(r.problems)
+	pos, line, tabLine, problems := r.pos, r.lineStart, r.tabLine, len(r.problems)
 	n := r.inline(indent)
 	if !fresh {
 		return n
@@ -61,7 +65,7 @@ func (r *yamlReader) content(indent int, s yamlSlot, begins, fresh bool) *Node {
 	r.nextBlock()
 	if !r.end() && r.column() == col && col > indent && !r.stopped {
 		// More follows at the same depth: this is a mapping whose first line lacks its colon.
-		r.pos, r.lineStart, r.problems = pos, line, r.problems[:problems]
+		r.pos, r.lineStart, r.tabLine, r.problems = pos, line, tabLine, r.problems[:problems]
 		return r.mapping(col)
 	}
 	return n
@@ -79,18 +83,18 @@ func (r *yamlReader) dash() bool { return r.mark('-') }
 
 func (r *yamlReader) mark(c byte) bool { return r.peek() == c && r.blankAt(r.pos+1) }
 
-// list reads the items of a list whose dashes stand in column col. level tells that it stands as deep as its key.
-func (r *yamlReader) list(col int, level bool) *Node {
+// list reads the items of a list whose dashes stand in column col. even tells that it stands as deep as its key.
+func (r *yamlReader) list(col int, even bool) *Node {
 	n := r.node(Sequence, r.pos, r.pos+1)
 	first := len(r.items)
 	if r.enter(r.pos) {
 		for {
 			n.End = r.pos + 1
 			r.pos++
-			item := r.value(col, afterTic)
+			item := r.value(col, afterDash)
 			r.items = append(r.items, item)
 			n.End = max(n.End, item.End)
-			if !r.anotherItem(n, col, level) {
+			if !r.anotherItem(n, col, even) {
 				break
 			}
 		}
@@ -101,11 +105,11 @@ func (r *yamlReader) list(col int, level bool) *Node {
 }
 
 // anotherItem moves to the next dash of the list, past lines that have no place in it.
-func (r *yamlReader) anotherItem(n *Node, col int, level bool) bool {
+func (r *yamlReader) anotherItem(n *Node, col int, even bool) bool {
 	for {
 		r.nextBlock()
 		switch c := r.column(); {
-		case r.end() || c < col || c == col && level && !r.dash():
+		case r.end() || c < col || c == col && even && !r.dash():
 			return false
 		case c == col && r.dash():
 			return true
@@ -164,31 +168,39 @@ func (r *yamlReader) anotherEntry(n *Node, keys *keySet, col int) bool {
 
 // entry reads one key and its value into the open mapping n.
 func (r *yamlReader) entry(n *Node, keys *keySet, col int) {
-	explicit := r.mark('?')
-	if explicit {
-		r.pos++
-		r.skipBlanks()
+	if r.mark('?') {
+		r.explicitEntry(n, keys, col)
+		return
 	}
-	k, ok := r.key(explicit)
+	k, ok := r.key()
 	n.End = max(n.End, k.end)
-	if explicit {
-		r.next()
-		if r.column() != col || !r.mark(':') {
-			k.value = r.null(k.end)
-			r.addKey(keys, k)
-			return
-		}
-	}
 	if ok {
-		n.End = max(n.End, r.pos+1)
 		r.pos++
+		n.End = r.pos
 	}
-	v := r.value(col, afterKey)
-	n.End = max(n.End, v.End)
+	k.value = r.value(col, afterKey)
+	n.End = max(n.End, k.value.End)
 	if ok {
-		k.value = v
 		r.addKey(keys, k)
 	}
+}
+
+// explicitEntry reads a key behind a question mark, and its value if a colon stands below it.
+func (r *yamlReader) explicitEntry(n *Node, keys *keySet, col int) {
+	r.pos++
+	name := r.value(col, afterMark)
+	k := yamlKey{text: name.Value, start: name.Start, end: name.End, wrong: name.Kind != Scalar}
+	if k.wrong {
+		r.report(name.Start, name.End, "a key is a word, not a %s", name.Kind)
+	}
+	k.value = r.null(name.End)
+	if r.nextBlock(); !r.end() && r.column() == col && r.mark(':') {
+		r.pos++
+		n.End = r.pos
+		k.value = r.value(col, afterMark)
+	}
+	n.End = max(n.End, k.value.End)
+	r.addKey(keys, k)
 }
 
 // yamlKey is one key as it was read.
@@ -207,10 +219,10 @@ func (r *yamlReader) addKey(keys *keySet, k yamlKey) {
 }
 
 // key reads a key up to its colon. ok is false, and the line is read to its end, when there is no colon.
-func (r *yamlReader) key(explicit bool) (k yamlKey, ok bool) {
-	k = r.keyText(true)
+func (r *yamlReader) key() (k yamlKey, ok bool) {
+	k = r.keyText(true, r.column())
 	r.skipBlanks()
-	if explicit || r.mark(':') {
+	if r.mark(':') {
 		return k, true
 	}
 	rest := r.plainEnd(k.start, r.lineEnd(r.pos))
@@ -224,8 +236,8 @@ func (r *yamlReader) key(explicit bool) (k yamlKey, ok bool) {
 	return k, false
 }
 
-// keyText reads the text of a key: plain, quoted or an alias.
-func (r *yamlReader) keyText(block bool) yamlKey {
+// keyText reads the text of a key: plain, quoted or an alias. Only quotes inside brackets go over several lines.
+func (r *yamlReader) keyText(block bool, indent int) yamlKey {
 	var p yamlProperties
 	for c := r.peek(); c == '&' || c == '!'; c = r.peek() {
 		r.property(&p)
@@ -235,11 +247,11 @@ func (r *yamlReader) keyText(block bool) yamlKey {
 	var n *Node
 	switch c := r.peek(); {
 	case c == '"' || c == '\'':
-		n = r.quoted(r.column(), true)
+		n = r.quoted(indent, block)
 	case c == '*':
 		n = r.alias()
 	case c == '[' || c == '{':
-		n = r.flow(r.column())
+		n = r.flow(indent)
 		r.report(n.Start, n.End, "a key is a word, not a %s", n.Kind)
 		return yamlKey{start: n.Start, end: n.End, wrong: true}
 	default:

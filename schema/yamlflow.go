@@ -130,7 +130,7 @@ func (r *yamlReader) flowEntry(n *Node, keys *keySet, indent int) {
 		r.pos++
 		r.next()
 	}
-	k := r.keyText(false)
+	k := r.keyText(false, indent)
 	n.End = max(n.End, k.end)
 	r.pos = max(r.pos, k.end)
 	k.value = r.flowPair(n, &k, indent)

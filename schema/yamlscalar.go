@@ -170,6 +170,10 @@ func (r *yamlReader) canBegin(block bool) {
 	switch c := r.peek(); {
 	case strings.IndexByte("@`%|>", c) >= 0, block && isFlowSign(c):
 		r.report(r.pos, r.pos+1, "a text cannot begin with '%c' unless it stands in quotes", c)
+	case block && (r.mark('?') || r.mark(':') || r.mark('-')):
+		r.report(r.pos, r.pos+1, "a text cannot begin with '%c' unless it stands in quotes", c)
+	case c == '#':
+		r.report(r.pos, r.pos+1, "a comment needs a blank before its '#'")
 	case !block && (c == '-' || c == '?') && (r.blankAt(r.pos+1) || isFlowSign(r.src[r.pos+1])):
 		r.report(r.pos, r.pos+1, "'%c' has no place inside brackets: put a text in quotes, and a list in '[ ]'", c)
 	}

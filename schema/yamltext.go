@@ -37,7 +37,7 @@ func (r *yamlReader) blockText(indent int) *Node {
 			}
 			blanks = end - next
 		}
-		if next >= len(r.src) {
+		if next >= len(r.src) || first && end >= len(r.src) && onlyBlanks(r.src[next:end]) {
 			break
 		}
 		r.pos, r.lineStart = end, next
@@ -47,14 +47,17 @@ func (r *yamlReader) blockText(indent int) *Node {
 			continue
 		}
 		indented := isBlank(line[0])
-		r.blockBreak(&text, h, first, empty, spaced || indented)
+		blockBreak(&text, h, first, empty, spaced || indented)
 		text.WriteString(line)
 		if trimmed := strings.TrimRight(line, " \t"); trimmed != "" {
 			n.End = next + blanks + len(trimmed)
 		}
 		first, empty, spaced = false, 0, indented
 	}
-	r.chomp(&text, h, first, empty)
+	if !first && h.chomp != '-' && r.pos >= len(r.src) && empty == 0 {
+		h.chomp = '-' // the last line has no line end to keep
+	}
+	chompText(&text, h, first, empty)
 	n.Value = text.String()
 	return n
 }
@@ -74,22 +77,29 @@ func (r *yamlReader) blockHeader() (h blockHeader) {
 	}
 }
 
-// blockDepth is the column in which the lines of the text begin: the stated one, or that of the first line with text.
+// blockDepth is the column in which the lines of the text begin: the stated one, or that of the first line with text,
+// or that of the longest blank line where none has text.
 func (r *yamlReader) blockDepth(base int, h blockHeader, indent int) int {
 	if h.indent > 0 {
 		return base + h.indent
 	}
+	longest := indent + 1
 	for i := r.pos; i < len(r.src); {
 		start := r.afterBreak(i)
 		i = start
 		for r.byteAt(i) == ' ' {
 			i++
 		}
-		if i < len(r.src) && !isBreak(r.src[i]) {
-			return max(i-start, indent+1)
+		switch depth := i - start; {
+		case i < len(r.src) && isBreak(r.src[i]):
+			longest = max(longest, depth)
+		case depth > indent && i < len(r.src) && !r.documentEnds(start):
+			return depth
+		default:
+			return longest
 		}
 	}
-	return indent + 1
+	return longest
 }
 
 // afterBreak is the offset behind the line end at i.
@@ -102,7 +112,7 @@ func (r *yamlReader) afterBreak(i int) int {
 
 // blockBreak writes the line ends before a line. Folding turns one between two lines of text into a blank and drops one
 // of several; a line that begins with a blank keeps those around it (YAML 1.2.2 section 8.1.3).
-func (r *yamlReader) blockBreak(text *strings.Builder, h blockHeader, first bool, empty int, keep bool) {
+func blockBreak(text *strings.Builder, h blockHeader, first bool, empty int, keep bool) {
 	switch {
 	case first:
 		writeBreaks(text, empty)
@@ -113,8 +123,8 @@ func (r *yamlReader) blockBreak(text *strings.Builder, h blockHeader, first bool
 	}
 }
 
-// chomp writes the line ends behind the last line.
-func (r *yamlReader) chomp(text *strings.Builder, h blockHeader, none bool, empty int) {
+// chompText writes the line ends behind the last line.
+func chompText(text *strings.Builder, h blockHeader, none bool, empty int) {
 	switch {
 	case h.chomp == '+' && none:
 		writeBreaks(text, empty)
