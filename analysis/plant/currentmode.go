@@ -14,15 +14,21 @@ type loopTerms struct {
 	rise, fall float64 // kf', kr', V per (A/s)
 }
 
-// currentLoop fills the slopes at the comparator for a mean on-slope of the sensed current (A/s of the equivalent phase) and returns Fm.
-func (s *Stage) currentLoop(c *Circuit, x *steady, slope float64, out *Solution) float64 {
+// currentLoop fills the slopes at the comparator for a mean on-slope of the sensed current (A/s of the equivalent phase).
+func (s *Stage) currentLoop(c *Circuit, x *steady, slope float64, out *Solution) {
 	r := &CurrentLoop{HalfFrequencyQuality: math.NaN()}
 	r.OnSlope = s.Sense * slope
 	r.ExternalSlope = c.Modulator.SlopeCompensation + s.MagnetizingSlope*x.terminal
 	r.SlopeRatio = 1 + r.ExternalSlope/r.OnSlope
 	r.OffDutyProduct = r.SlopeRatio * (1 - x.duty)
 	out.Current = r
-	return 1 / ((r.OnSlope + r.ExternalSlope) * s.Period)
+}
+
+// loopTerms are the constants of peak current mode in continuous conduction.
+func (s *Stage) loopTerms(x *steady, r *CurrentLoop) loopTerms {
+	d := x.duty
+	return loopTerms{gain: 1 / ((r.OnSlope + r.ExternalSlope) * s.Period), sense: s.Sense,
+		rise: -d * s.Period * s.Sense * (1 - d/2), fall: (1 - d) * (1 - d) * s.Period * s.Sense / 2}
 }
 
 // currentMode fills control function, line gain and output resistance of peak current mode in continuous conduction. The sampling polynomial He
@@ -33,11 +39,9 @@ func (s *Stage) currentLoop(c *Circuit, x *steady, slope float64, out *Solution)
 //
 // with c the row of the sensed current and b the duty column. The zeros are those of the duty's channel.
 func (s *Stage) currentMode(c *Circuit, x *steady, m *linear, k *channel, zeros []complex128, out *Solution) error {
-	gain := s.currentLoop(c, x, x.slope+x.slope2, out)
+	s.currentLoop(c, x, x.slope+x.slope2, out)
 	out.Current.HalfFrequencyQuality = 1 / (math.Pi * (out.Current.OffDutyProduct - 0.5))
-	d := x.duty
-	terms := loopTerms{gain: gain, sense: s.Sense,
-		rise: -d * s.Period * s.Sense * (1 - d/2), fall: (1 - d) * (1 - d) * s.Period * s.Sense / 2}
+	terms := s.loopTerms(x, out.Current)
 	n := m.order
 	wide := k.a
 	c0 := m.sensed

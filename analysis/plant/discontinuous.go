@@ -223,7 +223,8 @@ func (s *Stage) pulseModel(c *Circuit, p pulse, m *linear, out *Solution) error 
 	if err != nil {
 		return err
 	}
-	terms := loopTerms{gain: s.currentLoop(c, &p.steady, p.peak/(p.duty*s.Period), out), rise: -p.duty * s.Period * s.Sense}
+	s.currentLoop(c, &p.steady, p.peak/(p.duty*s.Period), out)
+	terms := s.pulseTerms(p, out.Current)
 	var f [maxOrder]float64
 	for j := range m.order {
 		f[j] = terms.gain * terms.rise * m.rise.row[j]
@@ -236,6 +237,11 @@ func (s *Stage) pulseModel(c *Circuit, p pulse, m *linear, out *Solution) error 
 	store(&out.Control, control, poles, zeros)
 	setOutputs(out, line, ohms)
 	return nil
+}
+
+// pulseTerms are the constants of peak current mode in discontinuous conduction.
+func (s *Stage) pulseTerms(p pulse, r *CurrentLoop) loopTerms {
+	return loopTerms{gain: 1 / ((r.OnSlope + r.ExternalSlope) * s.Period), rise: -p.duty * s.Period * s.Sense}
 }
 
 // bareResonanceOfPulse is bareResonance in discontinuous conduction: the stage without its filter, fed with the terminal's voltage.
@@ -254,4 +260,3 @@ func (s *Stage) bareResonanceOfPulse(p pulse, m *linear, out *Solution) error {
 	out.Resonance, out.Quality = resonanceOf(poles)
 	return nil
 }
-func (s *Stage) filterRatiosOfPulse(c *Circuit, p pulse, out *Solution) error { return nil }

@@ -10,7 +10,7 @@ func (s *Stage) generalModel(c *Circuit, x *steady, out *Solution) error {
 		return err
 	}
 	if s.HasFilter {
-		return s.filterRatios(x, out)
+		return s.filterRatios(c, x, out)
 	}
 	return nil
 }
@@ -31,17 +31,17 @@ func (s *Stage) controlModel(c *Circuit, x *steady, m *linear, out *Solution) er
 	line, ohms := m.steadyGain(&k.inv, &m.vo.row, colInput), -m.steadyGain(&k.inv, &m.vo.row, colLoad)
 	setOutputs(out, line, ohms)
 	var f [maxOrder]float64
-	h := 1 + s.feedForward(c, x, m, &f, 1)
+	h := 1 + s.feedForward(c, x, m, &f)
 	return k.closedForm(&f, h, zeros, out)
 }
 
 // feedForward adds the extra path of feed-forward behind an input filter, which senses the converter's own terminal: the duty falls by D/vt for a
 // rise of the terminal voltage vt (theory sheet section 6). It changes f and returns what it adds to h of d = (command + f·x)/h.
-func (s *Stage) feedForward(c *Circuit, x *steady, m *linear, f *[maxOrder]float64, weight float64) float64 {
+func (s *Stage) feedForward(c *Circuit, x *steady, m *linear, f *[maxOrder]float64) float64 {
 	if !c.Modulator.FeedForward || !s.HasFilter {
 		return 0
 	}
-	k := weight * x.duty / x.terminal
+	k := x.duty / x.terminal
 	for i := range m.order {
 		f[i] -= k * m.vt.row[i]
 	}

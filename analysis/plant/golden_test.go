@@ -75,9 +75,12 @@ func compareCorner(t *testing.T, c *Circuit, corner *goldenCorner, out *Solution
 	}
 	if want, ok := f["input-filter"].(tree); ok {
 		require.NotNil(t, out.Input)
-		near(t, want, "zo-over-zn", out.Input.ZoOverZn, 1e-4)
-		near(t, want, "zo-over-zd", out.Input.ZoOverZd, 1e-4)
-	} else {
+		// The golden ratios are the highest of a frequency grid; ours are the refined maxima, so never below and a little above.
+		near(t, want, "zo-over-zn", out.Input.ZoOverZn, 5e-4)
+		near(t, want, "zo-over-zd", out.Input.ZoOverZd, 5e-4)
+		sampled, _ := figure(want, "zo-over-zd")
+		assert.GreaterOrEqual(t, out.Input.ZoOverZd, sampled*(1-1e-6))
+	} else if c.Filter.Capacitance == 0 {
 		assert.Nil(t, out.Input)
 	}
 }

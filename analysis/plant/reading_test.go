@@ -74,7 +74,7 @@ func readGolden(t testing.TB) []golden {
 	return all
 }
 
-var quantity = regexp.MustCompile(`^(-?[0-9.]+(?:e-?[0-9]+)?)\s*(m|k|u|n|p|M)?(Hz|H|F|Ω|A|V/us|V|s|)$`)
+var quantity = regexp.MustCompile(`^(-?[0-9.]+(?:e-?[0-9]+)?)\s*(m|k|u|n|p|M)?(Hz|H|F|Ω|R|A|V/us|V|s|)$`)
 var letterCode = regexp.MustCompile(`^([0-9]+)([RkmunpM])([0-9]+)$`)
 var prefixes = map[string]float64{"": 1, "m": 1e-3, "k": 1e3, "u": 1e-6, "n": 1e-9, "p": 1e-12, "M": 1e6, "R": 1}
 
