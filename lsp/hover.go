@@ -119,13 +119,20 @@ func (p *place) aboutValue() {
 // field looks up the field that the place belongs to: the one itself, or for a part of a quantity's long form (its min,
 // its tolerance) the quantity.
 func (p *place) field() (schema.FieldInfo, string, bool) {
-	for pointer := p.pointer; pointer != ""; pointer = pointer[:strings.LastIndexByte(pointer, '/')] {
-		if info, ok := schema.LookupField(p.doc.Kind, pointer); ok {
-			return info, pointer, true
+	for pointer := p.pointer; pointer != ""; pointer = parent(pointer) {
+		info, ok := schema.LookupField(p.doc.Kind, pointer)
+		if !ok {
+			continue
 		}
+		if above, ok := schema.LookupField(p.doc.Kind, parent(pointer)); ok && above.Dimension != 0 {
+			continue
+		}
+		return info, pointer, true
 	}
 	return schema.FieldInfo{}, "", false
 }
+
+func parent(pointer string) string { return pointer[:max(0, strings.LastIndexByte(pointer, '/'))] }
 
 // findings gives those of this very text that stand at the offset, causes before consequences, at most four.
 func (p *place) findings() []*rules.Finding {
