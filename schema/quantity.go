@@ -8,7 +8,8 @@ import (
 	"unicode/utf8"
 )
 
-// fault is why a text is no quantity of its field. Its text continues the field's name: "expects henries, found '22 uF'".
+// fault is why a text is no quantity of its field. Its text continues the field's name: " expects henries, found '22 uF'"
+// without the blank, or ": a tolerance is …".
 type fault struct{ text string }
 
 func (f *fault) Error() string { return f.text }
@@ -50,13 +51,16 @@ func printable(text string) string {
 func ParseQuantity(text string, dim Dimension) (Quantity, error) {
 	q, f := parseQuantity(text, dim)
 	if f != nil {
-		return Quantity{}, f
+		return Quantity{}, &fault{strings.TrimPrefix(f.text, ": ")}
 	}
 	return q, nil
 }
 
 func parseQuantity(text string, dim Dimension) (Quantity, *fault) {
 	s := strings.TrimFunc(text, blank)
+	if dim == Ratio { // a deviation to both sides: "± 2 %"
+		s = strings.TrimLeftFunc(strings.TrimPrefix(strings.TrimPrefix(s, "±"), "+/-"), blank)
+	}
 	if s == "" {
 		return Quantity{}, faultf("expects %s, found an empty text", dim)
 	}
