@@ -7,41 +7,41 @@ import (
 	"pgregory.net/rapid"
 )
 
-// written is a value of a generated text, with the range at which it was written.
-type written struct {
+// generated is a value of a generated text, with the range at which it was written.
+type generated struct {
 	kind       NodeKind
 	start, end int
 	typ        ScalarType
 	value      string
-	keys       []writtenKey
-	items      []*written
+	keys       []generatedKey
+	items      []*generated
 }
 
-type writtenKey struct {
+type generatedKey struct {
 	text       string
 	start, end int
-	value      *written
+	value      *generated
 }
 
-// writer writes a random document and notes what stands where.
-type writer struct {
+// generator writes a random document and notes what stands where.
+type generator struct {
 	*rapid.T
 	strings.Builder
 	eol string
 }
 
-func (w *writer) pick(label string, options ...string) string {
+func (w *generator) pick(label string, options ...string) string {
 	return rapid.SampledFrom(options).Draw(w.T, label)
 }
 
-func (w *writer) chance(percent int, label string) bool {
+func (w *generator) chance(percent int, label string) bool {
 	return rapid.IntRange(0, 99).Draw(w.T, label) < percent
 }
 
-func (w *writer) indent(n int) { w.WriteString(strings.Repeat(" ", n)) }
+func (w *generator) indent(n int) { w.WriteString(strings.Repeat(" ", n)) }
 
 // comment writes the end of a line, now and then with a comment and empty lines.
-func (w *writer) comment() {
+func (w *generator) comment() {
 	w.WriteString(w.pick("end of line", "", "", "", "", " ", "\t", " # bei 25 °C: µ", "\t# note, {with} [signs] 'and quotes\"", "  #"))
 	w.WriteString(w.eol)
 	w.WriteString(w.pick("between lines", "", "", "", w.eol, "# whole line: x"+w.eol, "      # deep"+w.eol, "  "+w.eol))
@@ -58,13 +58,13 @@ var typed = map[string]ScalarType{"22e-6": Number, "1e-3": Number, ".5": Number,
 // words are lines of a text that goes over several lines.
 var words = []string{"tide", "gauge µ", "of the", "east pier", "Ω", "🛥", "n-th", "3 V"}
 
-func (w *writer) lines(label string) []string {
+func (w *generator) lines(label string) []string {
 	return rapid.SliceOfN(rapid.SampledFrom(words), 1, 4).Draw(w.T, label)
 }
 
 // scalar writes a value of text in any style that may stand here. n is the indentation that further lines must exceed.
-func (w *writer) scalar(n int, flow bool) *written {
-	s := &written{kind: Scalar, start: w.Len(), typ: Text}
+func (w *generator) scalar(n int, flow bool) *generated {
+	s := &generated{kind: Scalar, start: w.Len(), typ: Text}
 	styles := []string{"plain", "plain", "typed", "single", "double", "lines", "single lines", "double lines"}
 	if !flow {
 		styles = append(styles, "literal", "folded")
@@ -102,7 +102,7 @@ func (w *writer) scalar(n int, flow bool) *written {
 }
 
 // double writes a text in double quotes, each character as itself or escaped.
-func (w *writer) double(text string) {
+func (w *generator) double(text string) {
 	w.WriteByte('"')
 	for _, r := range text {
 		short := strings.IndexRune("\"\\\n\t\x00", r)
@@ -121,7 +121,7 @@ func (w *writer) double(text string) {
 }
 
 // folded writes a text over several lines between two quotes, or none.
-func (w *writer) folded(s *written, n int, open, closing string) {
+func (w *generator) folded(s *generated, n int, open, closing string) {
 	w.WriteString(open)
 	for i, line := range w.lines("lines") {
 		if i > 0 {
@@ -143,7 +143,7 @@ func (w *writer) folded(s *written, n int, open, closing string) {
 }
 
 // block writes a text behind | or >, up to but without its last line end.
-func (w *writer) block(s *written, n int, style string) {
+func (w *generator) block(s *generated, n int, style string) {
 	chomp := w.pick("chomp", "", "-", "+")
 	w.WriteString(map[string]string{"literal": "|", "folded": ">"}[style] + chomp)
 	w.WriteString(w.pick("behind the header", "", " ", " # comment"))
@@ -166,8 +166,8 @@ func (w *writer) block(s *written, n int, style string) {
 }
 
 // key writes a key that is new in its mapping.
-func (w *writer) key(taken map[string]bool) writtenKey {
-	k := writtenKey{text: w.pick("key", "a", "input-voltage", "µ", "x y", "🛥", "n", "q'r", "22")}
+func (w *generator) key(taken map[string]bool) generatedKey {
+	k := generatedKey{text: w.pick("key", "a", "input-voltage", "µ", "x y", "🛥", "n", "q'r", "22")}
 	for taken[k.text] {
 		k.text += "1"
 	}
@@ -188,7 +188,7 @@ func (w *writer) key(taken map[string]bool) writtenKey {
 }
 
 // gap writes what may stand between the members of brackets.
-func (w *writer) gap(n int) {
+func (w *generator) gap(n int) {
 	if w.chance(20, "line end in brackets") {
 		w.WriteString(w.pick("comment in brackets", "", " # no ] here }"))
 		w.WriteString(w.eol)
@@ -199,8 +199,8 @@ func (w *writer) gap(n int) {
 }
 
 // flow writes a mapping or list in brackets.
-func (w *writer) flow(n, depth int) *written {
-	s := &written{start: w.Len(), kind: Sequence}
+func (w *generator) flow(n, depth int) *generated {
+	s := &generated{start: w.Len(), kind: Sequence}
 	isMap := w.chance(50, "braces")
 	open, closing := "[", "]"
 	if isMap {
@@ -231,7 +231,7 @@ func (w *writer) flow(n, depth int) *written {
 	return s
 }
 
-func (w *writer) flowMember(n, depth int) *written {
+func (w *generator) flowMember(n, depth int) *generated {
 	if depth > 0 && w.chance(25, "nested brackets") {
 		return w.flow(n, depth-1)
 	}
@@ -239,7 +239,7 @@ func (w *writer) flowMember(n, depth int) *written {
 }
 
 // value writes what stands behind a key or a dash, and the end of its line.
-func (w *writer) value(n, depth int, afterDash bool) *written {
+func (w *generator) value(n, depth int, afterDash bool) *generated {
 	switch what := rapid.IntRange(0, 9).Draw(w.T, "what"); {
 	case what < 2 && depth > 0:
 		w.WriteString(w.eol)
@@ -251,7 +251,7 @@ func (w *writer) value(n, depth int, afterDash bool) *written {
 		w.WriteString(" ")
 		return w.compact(n+2, depth-1)
 	case what == 3:
-		s := &written{kind: Scalar, start: w.Len(), end: w.Len(), typ: Null}
+		s := &generated{kind: Scalar, start: w.Len(), end: w.Len(), typ: Null}
 		w.comment()
 		return s
 	case what == 4:
@@ -267,14 +267,14 @@ func (w *writer) value(n, depth int, afterDash bool) *written {
 }
 
 // structure writes a mapping or list of block structure with column n, from the start of a line.
-func (w *writer) structure(n, depth int) *written {
+func (w *generator) structure(n, depth int) *generated {
 	w.indent(n)
 	return w.compact(n, depth)
 }
 
 // compact is structure from its first sign on.
-func (w *writer) compact(n, depth int) *written {
-	s := &written{start: w.Len(), kind: Mapping}
+func (w *generator) compact(n, depth int) *generated {
+	s := &generated{start: w.Len(), kind: Mapping}
 	if w.chance(35, "list") {
 		s.kind = Sequence
 	}
@@ -283,7 +283,7 @@ func (w *writer) compact(n, depth int) *written {
 		if i > 0 {
 			w.indent(n)
 		}
-		var v *written
+		var v *generated
 		if s.kind == Sequence {
 			w.WriteString("-")
 			s.end = w.Len()
@@ -302,8 +302,8 @@ func (w *writer) compact(n, depth int) *written {
 }
 
 // generateYAML writes a whole document whose top is a mapping.
-func generateYAML(t *rapid.T) (text string, root *written) {
-	w := &writer{T: t, eol: rapid.SampledFrom([]string{"\n", "\r\n", "\r"}).Draw(t, "line end")}
+func generateYAML(t *rapid.T) (text string, root *generated) {
+	w := &generator{T: t, eol: rapid.SampledFrom([]string{"\n", "\r\n", "\r"}).Draw(t, "line end")}
 	if w.chance(20, "byte-order mark") {
 		w.WriteString(byteOrderMark)
 	}
@@ -318,8 +318,8 @@ func generateYAML(t *rapid.T) (text string, root *written) {
 }
 
 // top writes the entries of the whole document.
-func (w *writer) top() *written {
-	s := &written{start: w.Len(), kind: Mapping}
+func (w *generator) top() *generated {
+	s := &generated{start: w.Len(), kind: Mapping}
 	taken := map[string]bool{}
 	for range rapid.IntRange(1, 4).Draw(w.T, "top entries") {
 		k := w.key(taken)

@@ -59,11 +59,14 @@ func (r *jsonReader) lineEnd() int {
 	return len(r.src)
 }
 
-// wordEnd is the end of the text at pos up to a blank or a sign; at least one character.
+// wordEnd is the end of the sign or text at pos, in quotes or up to a blank or a sign; at least one character.
 func (r *jsonReader) wordEnd() int {
 	_, size := utf8.DecodeRuneInString(r.src[r.pos:])
 	end := r.pos + size
-	if isFlowSign(r.src[r.pos]) || r.src[r.pos] == '"' || r.src[r.pos] == ':' {
+	switch c := r.src[r.pos]; {
+	case c == '"':
+		return max(end, quotedEnd(r.src, r.pos))
+	case c == ':' || isFlowSign(c):
 		return end
 	}
 	for end < len(r.src) && !isBlank(r.src[end]) && !isBreak(r.src[end]) && !isFlowSign(r.src[end]) && r.src[end] != '"' && r.src[end] != ':' {

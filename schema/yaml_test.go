@@ -11,7 +11,7 @@ import (
 )
 
 // sameAsWritten compares a tree with what the generator noted, every range included.
-func sameAsWritten(t require.TestingT, d *Document, w *written, n *Node, path string) {
+func sameAsWritten(t require.TestingT, d *Document, w *generated, n *Node, path string) {
 	require.Equal(t, w.kind, n.Kind, path)
 	require.Equal(t, string(d.Text[w.start:w.end]), string(d.Text[n.Start:n.End]), path)
 	require.Equal(t, [2]int{w.start, w.end}, [2]int{n.Start, n.End}, path)

@@ -63,8 +63,8 @@ func (r *yamlReader) content(indent int, s yamlSlot, begins, fresh bool) *Node {
 		return n
 	}
 	r.nextBlock()
-	if !r.end() && r.column() == col && col > indent && !r.stopped {
-		// More follows at the same depth: this is a mapping whose first line lacks its colon.
+	if !r.end() && r.column() >= col && col > indent && n.Kind == Scalar && n.Alias == nil {
+		// More follows at the same depth or deeper: this is a mapping whose first line lacks its colon.
 		r.pos, r.lineStart, r.tabLine, r.problems = pos, line, tabLine, r.problems[:problems]
 		return r.mapping(col)
 	}

@@ -108,7 +108,7 @@ func (r *yamlReader) closesAhead() bool {
 				return true
 			}
 		case '"', '\'':
-			if end := r.quoteEnd(i); end > 0 && opensQuote(r.src[i-1]) {
+			if end := quotedEnd(r.src, i); end > 0 && opensQuote(r.src[i-1]) {
 				i = end - 1
 			}
 		case '#':

@@ -103,7 +103,7 @@ func (r *yamlReader) keyAhead() bool {
 	}
 	switch c := r.byteAt(i); c {
 	case '"', '\'':
-		if i = r.quoteEnd(i); i < 0 {
+		if i = quotedEnd(r.src, i); i < 0 {
 			return false
 		}
 	case '[', '{':
@@ -125,16 +125,16 @@ func (r *yamlReader) keyAhead() bool {
 	return r.byteAt(i) == ':' && r.blankAt(i+1)
 }
 
-// quoteEnd is the offset behind the quoted text at i when it ends on its line, else -1.
-func (r *yamlReader) quoteEnd(i int) int {
-	quote := r.src[i]
-	for i++; i < len(r.src) && !isBreak(r.src[i]); i++ {
+// quotedEnd is the offset behind the quoted text at i when it ends on its line, else -1.
+func quotedEnd(text string, i int) int {
+	quote := text[i]
+	for i++; i < len(text) && !isBreak(text[i]); i++ {
 		switch {
-		case r.src[i] == '\\' && quote == '"':
+		case text[i] == '\\' && quote == '"':
 			i++
-		case r.src[i] == quote && quote == '\'' && r.byteAt(i+1) == '\'':
+		case text[i] == quote && quote == '\'' && strings.HasPrefix(text[i:], "''"):
 			i++
-		case r.src[i] == quote:
+		case text[i] == quote:
 			return i + 1
 		}
 	}
@@ -152,7 +152,7 @@ func (r *yamlReader) bracketEnd(i int) int {
 				return i + 1
 			}
 		case '"', '\'':
-			if end := r.quoteEnd(i); end > 0 && opensQuote(r.src[i-1]) {
+			if end := quotedEnd(r.src, i); end > 0 && opensQuote(r.src[i-1]) {
 				i = end - 1
 			}
 		}
