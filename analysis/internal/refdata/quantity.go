@@ -11,7 +11,7 @@ import (
 // spread is a quantity in SI units; low == high where it has no tolerance.
 type spread struct{ low, nominal, high float64 }
 
-var quantity = regexp.MustCompile(`^([0-9.]*(?:e[-+]?[0-9]+)?)\s*([pnuµmkMGR]?)([0-9]*)\s*(V/us|Hz|H|F|V|A|Ω|S|s|dB|deg|)$`)
+var quantity = regexp.MustCompile(`^(-?[0-9.]*(?:e[-+]?[0-9]+)?)\s*([pnuµmkMGR]?)([0-9]*)\s*(V/us|Hz|H|F|V|A|Ω|S|s|dB|deg|)$`)
 
 var prefixes = map[string]float64{"": 1, "R": 1, "p": 1e-12, "n": 1e-9, "u": 1e-6, "µ": 1e-6, "m": 1e-3, "k": 1e3, "M": 1e6, "G": 1e9}
 

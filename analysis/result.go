@@ -1,0 +1,76 @@
+package analysis
+
+// gather puts the corners of all units in order: nominal, the operating corners with nominal parts, everything else, each
+// assignment once. The last unit is nominal; the others begin with their operating corner.
+func (r *Result) gather(p *plan, found [][]Corner) {
+	total := 0
+	for _, list := range found {
+		total += len(list)
+	}
+	r.Corners = make([]Corner, 0, total)
+	known := make(map[string]bool, total)
+	var key []byte
+	x := make([]float64, len(p.nominal))
+	add := func(c *Corner) bool {
+		key = appendKey(key[:0], valuesOf(c, x))
+		if known[string(key)] {
+			return false
+		}
+		known[string(key)] = true
+		r.Corners = append(r.Corners, *c)
+		return true
+	}
+	last := len(found) - 1
+	add(&found[last][0])
+	for _, list := range found[:last] {
+		if add(&list[0]) {
+			r.Operating++
+		}
+	}
+	for _, list := range found[:last] {
+		for i := range list {
+			add(&list[i])
+		}
+	}
+}
+
+// append adds corners whose assignment is new.
+func (r *Result) append(p *plan, found [][]Corner) {
+	known := make(map[string]bool, len(r.Corners))
+	var key []byte
+	x := make([]float64, len(p.nominal))
+	for i := range r.Corners {
+		known[string(appendKey(key[:0], valuesOf(&r.Corners[i], x)))] = true
+	}
+	for _, list := range found {
+		for i := range list {
+			key = appendKey(key[:0], valuesOf(&list[i], x))
+			if !known[string(key)] {
+				known[string(key)] = true
+				r.Corners = append(r.Corners, list[i])
+			}
+		}
+	}
+}
+
+// explain completes nominal, the operating corners and every corner that a worst entry refers to.
+func (r *Result) explain(p *plan, t *team) error {
+	var list []int
+	marked := make(map[int]bool)
+	mark := func(i int) {
+		if !marked[i] {
+			marked[i] = true
+			list = append(list, i)
+		}
+	}
+	for i := range r.Operating + 1 {
+		mark(i)
+	}
+	r.Worst.each(func(w *Worst) { mark(w.Corner) })
+	return t.run(len(list), func(w *worker, unit int) error {
+		c := &r.Corners[list[unit]]
+		w.set(valuesOf(c, make([]float64, len(p.nominal))))
+		w.explain(c)
+		return nil
+	})
+}

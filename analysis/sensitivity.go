@@ -1,0 +1,148 @@
+package analysis
+
+import (
+	"math"
+	"math/cmplx"
+
+	"halfplane/analysis/loop"
+	"halfplane/analysis/network"
+	"halfplane/analysis/transfer"
+)
+
+// guide moves every tolerance in x that is not a vertex axis to the extreme that makes the figure worse, to first order, at the
+// corner c whose assignment x is. An axis that changes nothing stays.
+//
+// The loop gain changes by δ = ln T(max) − ln T(min) at a fixed frequency when one axis runs from min to max. With l = d ln T/du,
+// u = ln ω (all first order):
+//
+//	crossover        δu = −Re δ/Re l                 phase margin    δm = Im δ + Im l·δu
+//	phase crossover  δu = −Im δ/Im l                 gain margin     −(Re δ + Re l·δu)
+//	modulus margin   Re((1+T)*·T·δ)/|1+T|
+func (s *search) guide(f figure, x []float64, c *Corner) {
+	w := s.worker
+	omega := 2 * math.Pi * f.frequency(c.Loop)
+	if !(omega > 0) {
+		return
+	}
+	w.set(x)
+	if !w.hasLoop() {
+		return
+	}
+	t := w.gain.At(omega)
+	l, err := loop.LogSlope(&w.gain, omega)
+	if err != nil {
+		return
+	}
+	moved := append([]float64(nil), x...)
+	for _, axis := range s.plan.other {
+		var delta complex128
+		var zero float64 // change of ln of the right half-plane zero
+		if w.circuit[axis] {
+			delta, zero = s.stageChange(x, axis, omega)
+		} else {
+			delta = w.networkChange(s.plan, axis, omega)
+		}
+		switch change := f.change(c.Loop, t, l, delta, zero); {
+		case change < 0:
+			moved[axis] = s.plan.box.Max[axis]
+		case change > 0:
+			moved[axis] = s.plan.box.Min[axis]
+		}
+	}
+	copy(x, moved)
+}
+
+// frequency is where the figure is decided, Hz; NaN: nowhere.
+func (f figure) frequency(l *loop.Figures) float64 {
+	switch f {
+	case phaseMargin:
+		return l.PhaseMarginFrequency
+	case gainMargin:
+		return l.GainMarginFrequency
+	case modulusMargin:
+		return l.ModulusFrequency
+	default:
+		return l.Crossover
+	}
+}
+
+// change is the first-order change of the figure's badness (up to a positive factor) when ln T changes by delta.
+func (f figure) change(figures *loop.Figures, t, l, delta complex128, zero float64) float64 {
+	crossover := -real(delta) / real(l)
+	switch f {
+	case phaseMargin:
+		m := math.Atan2(-imag(t), -real(t))
+		change := math.Copysign(1, m) * (imag(delta) + imag(l)*crossover)
+		if !figures.Stable {
+			change = -change
+		}
+		return change
+	case gainMargin:
+		change := -(real(delta) - real(l)*imag(delta)/imag(l))
+		if !figures.Stable && cmplx.Abs(t) < 1 {
+			change = -change
+		}
+		return change
+	case modulusMargin:
+		return real(cmplx.Conj(1+t) * t * delta)
+	case crossoverOverZero:
+		return zero - crossover
+	case highCrossover:
+		return -crossover
+	default:
+		return crossover
+	}
+}
+
+// networkChange is ln C(max) − ln C(min) at omega for one axis of the compensator, the others nominal.
+func (w *worker) networkChange(p *plan, axis int, omega float64) complex128 {
+	if w.extremes == nil {
+		w.buildExtremes(p)
+	}
+	pair := &w.extremes[axis]
+	return logRatio(pair[1].At(omega), pair[0].At(omega))
+}
+
+// buildExtremes builds the compensator at both ends of each of its axes, the others nominal, once for a worker.
+func (w *worker) buildExtremes(p *plan) {
+	w.extremes = make([][2]transfer.Product, len(p.nominal))
+	point := w.design.Nominal.clone()
+	for _, axis := range p.other {
+		if w.circuit[axis] {
+			continue
+		}
+		field := Field(&point, w.design.Axes[axis].Path)
+		before := *field
+		for side, v := range [2]float64{p.box.Min[axis], p.box.Max[axis]} {
+			*field = v
+			if err := network.Build(&point.Network, &w.extremes[axis][side]); err != nil {
+				w.extremes[axis][side] = transfer.Product{Function: transfer.Function{Gain: nan}}
+			}
+		}
+		*field = before
+	}
+}
+
+// stageChange is the same for an axis of the power stage or the modulator, around x; also the change of ln of the right
+// half-plane zero. NaN where an extreme has no model.
+func (s *search) stageChange(x []float64, axis int, omega float64) (delta complex128, zero float64) {
+	w, before := s.worker, x[axis]
+	defer func() { x[axis] = before }()
+	var gain [2]complex128
+	var zeros [2]float64
+	for side, v := range [2]float64{s.plan.box.Min[axis], s.plan.box.Max[axis]} {
+		x[axis] = v
+		w.set(x)
+		if !w.hasLoop() {
+			return complex(nan, nan), nan
+		}
+		gain[side], zeros[side] = w.gain.At(omega), w.solution.RHPZero
+	}
+	return logRatio(gain[1], gain[0]), math.Log(zeros[1] / zeros[0])
+}
+
+// logRatio is ln(a/b).
+func logRatio(a, b complex128) complex128 {
+	r := a / b
+	return complex(math.Log(cmplx.Abs(r)), cmplx.Phase(r))
+}

@@ -1,0 +1,55 @@
+package spread
+
+import (
+	"math"
+	"testing"
+
+	"github.com/stretchr/testify/assert"
+)
+
+func TestVerticesVisitsEveryCombinationOnce(t *testing.T) {
+	b := Box{Min: []float64{0, 1, 5, 2}, Max: []float64{1, 2, 5, 9}}
+	seen := map[[4]float64]int{}
+	x := []float64{0.5, 1.5, 5, 3}
+	b.Vertices(x, []int{0, 1, 2}, func(x []float64) bool { seen[[4]float64(x)]++; return true })
+	assert.Equal(t, map[[4]float64]int{{0, 1, 5, 3}: 1, {0, 2, 5, 3}: 1, {1, 1, 5, 3}: 1, {1, 2, 5, 3}: 1}, seen)
+	assert.Equal(t, []float64{0.5, 1.5, 5, 3}, x)
+	calls := 0
+	assert.False(t, b.Vertices(x, []int{0, 1}, func([]float64) bool { calls++; return calls < 2 }))
+	assert.Equal(t, 2, calls)
+}
+
+func TestDescendFindsTheWorstVertexOfALinearFigure(t *testing.T) {
+	b := Box{Min: []float64{-1, -1, -1}, Max: []float64{1, 1, 1}}
+	x := []float64{0, 0, 0}
+	f := func(x []float64) float64 { return 3*x[0] - 2*x[1] + x[2] }
+	assert.Equal(t, -6.0, b.Descend(x, f(x), []int{0, 1, 2}, 5, f))
+	assert.Equal(t, []float64{-1, 1, -1}, x)
+}
+
+func TestInsideFindsAnInteriorMinimum(t *testing.T) {
+	b := Box{Min: []float64{0}, Max: []float64{10}}
+	x := []float64{0}
+	f := func(x []float64) float64 { return (x[0] - 3.3) * (x[0] - 3.3) }
+	assert.InDelta(t, 0, b.Inside(x, f(x), []int{0}, 5, f), 0.01)
+	assert.InDelta(t, 3.3, x[0], 0.1)
+}
+
+func TestFiguresThatDoNotExistAreNeverWorst(t *testing.T) {
+	b := Box{Min: []float64{0}, Max: []float64{1}}
+	x := []float64{0.5}
+	f := func(x []float64) float64 {
+		if x[0] == 0 {
+			return math.NaN()
+		}
+		return x[0]
+	}
+	assert.Equal(t, 1.0, b.Descend(x, math.NaN(), []int{0}, 3, f))
+}
+
+func TestBoundaryIsClosedFromBothSides(t *testing.T) {
+	in, out := Boundary(0, 8, 40, func(v float64) bool { return v < math.Pi })
+	assert.Less(t, in, math.Pi)
+	assert.GreaterOrEqual(t, out, math.Pi)
+	assert.InDelta(t, in, out, 1e-10)
+}

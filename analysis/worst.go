@@ -1,0 +1,85 @@
+package analysis
+
+// figure is one of the tracked figures. Each has a badness: the lower, the worse.
+type figure int
+
+const (
+	phaseMargin figure = iota
+	gainMargin
+	modulusMargin
+	crossoverOverZero
+	highCrossover
+	lowCrossover
+	figures // how many
+)
+
+// badness judges a corner by the figure, NaN: it does not exist there.
+func (f figure) badness(c *Corner) float64 {
+	if c.Loop == nil {
+		return nan
+	}
+	switch f {
+	case phaseMargin:
+		return c.Loop.PhaseMargin
+	case gainMargin:
+		return c.Loop.GainMargin
+	case modulusMargin:
+		return c.Loop.ModulusMargin
+	case crossoverOverZero:
+		return -c.Loop.Crossover / c.Plant.RHPZero
+	case highCrossover:
+		return -c.Loop.Crossover
+	default:
+		return c.Loop.Crossover
+	}
+}
+
+// worsts finds the worst values of all corners; the first of equals counts.
+func worsts(corners []Corner) Worsts {
+	w := Worsts{
+		PhaseMargin: nowhere, GainMargin: nowhere, GainReductionMargin: nowhere, ModulusMargin: nowhere, RHPZero: nowhere,
+		Crossover: nowhere, CrossoverLow: nowhere, CrossoverOverRHPZero: nowhere,
+	}
+	for i := range corners {
+		c := &corners[i]
+		if c.Reached && c.Plant.HasModel {
+			w.RHPZero.least(i, c.Plant.RHPZero)
+		}
+		if c.Loop == nil {
+			continue
+		}
+		w.PhaseMargin.least(i, c.Loop.PhaseMargin)
+		w.GainMargin.least(i, c.Loop.GainMargin)
+		w.GainReductionMargin.least(i, c.Loop.GainReductionMargin)
+		w.ModulusMargin.least(i, c.Loop.ModulusMargin)
+		w.CrossoverLow.least(i, c.Loop.Crossover)
+		w.Crossover.greatest(i, c.Loop.Crossover)
+		w.CrossoverOverRHPZero.greatest(i, c.Loop.Crossover/c.Plant.RHPZero)
+	}
+	w.HighestCrossoverOverLowestRHPZero = w.Crossover.Value / w.RHPZero.Value
+	return w
+}
+
+var nowhere = Worst{Value: nan, Corner: -1}
+
+func (w *Worst) least(corner int, value float64) {
+	if value < w.Value || w.Corner < 0 && value == value { // NaN differs from itself
+		*w = Worst{value, corner}
+	}
+}
+
+func (w *Worst) greatest(corner int, value float64) {
+	if value > w.Value || w.Corner < 0 && value == value {
+		*w = Worst{value, corner}
+	}
+}
+
+// each visits the entries that refer to a corner.
+func (w *Worsts) each(visit func(*Worst)) {
+	for _, e := range []*Worst{&w.PhaseMargin, &w.GainMargin, &w.GainReductionMargin, &w.ModulusMargin, &w.RHPZero, &w.Crossover,
+		&w.CrossoverLow, &w.CrossoverOverRHPZero} {
+		if e.Corner >= 0 {
+			visit(e)
+		}
+	}
+}
