@@ -1,0 +1,71 @@
+package main
+
+import (
+	"flag"
+	"os"
+	"path/filepath"
+	"testing"
+
+	"github.com/rogpeppe/go-internal/testscript"
+	"github.com/stretchr/testify/require"
+)
+
+var update = flag.Bool("update", false, "rewrite the expected outputs in testdata/script")
+
+func TestMain(m *testing.M) {
+	testscript.Main(m, map[string]func(){"halfplane": main})
+}
+
+// TestCommands runs every script archive in testdata/script: what a person types, sees and gets as exit status.
+func TestCommands(t *testing.T) {
+	reference, err := filepath.Abs("../../testdata/reference")
+	require.NoError(t, err)
+	shelf, err := filepath.Abs("shelf")
+	require.NoError(t, err)
+	testscript.Run(t, testscript.Params{
+		Dir:           "testdata/script",
+		UpdateScripts: *update,
+		Setup: func(e *testscript.Env) error {
+			e.Setenv("REFERENCE", reference)
+			e.Setenv("SHELF", shelf)
+			e.Setenv("TERM", "xterm")
+			return nil
+		},
+		Cmds: map[string]func(*testscript.TestScript, bool, []string){
+			"exits":   exits,
+			"symlink": symlink,
+			"large":   large,
+			"socket":  socket,
+		},
+	})
+}
+
+// exits runs the program and wants this exit status: exits 2 check bad.converter.yaml.
+func exits(ts *testscript.TestScript, _ bool, args []string) {
+	var want int
+	if len(args) < 1 || len(args[0]) != 1 {
+		ts.Fatalf("usage: exits STATUS ARGUMENT…")
+	}
+	want = int(args[0][0] - '0')
+	err := ts.Exec("halfplane", args[1:]...)
+	got := 0
+	if e, ok := err.(interface{ ExitCode() int }); ok {
+		got = e.ExitCode()
+	}
+	if got != want {
+		ts.Fatalf("exit status %d, expected %d\n%s", got, want, ts.ReadFile("stderr"))
+	}
+}
+
+// symlink makes a link that need not lead anywhere: symlink NAME TARGET.
+func symlink(ts *testscript.TestScript, _ bool, args []string) {
+	ts.Check(os.Symlink(args[1], ts.MkAbs(args[0])))
+}
+
+// large makes a file of so many megabytes: large NAME.
+func large(ts *testscript.TestScript, _ bool, args []string) {
+	f, err := os.Create(ts.MkAbs(args[0]))
+	ts.Check(err)
+	ts.Check(f.Truncate(50 << 20))
+	ts.Check(f.Close())
+}
