@@ -27,6 +27,9 @@ func (r *jsonReader) document() *Node {
 
 // space moves to the next sign and reports comments on the way; false at the end.
 func (r *jsonReader) space() bool {
+	if r.stopped {
+		r.pos = len(r.src)
+	}
 	for r.pos < len(r.src) {
 		switch c := r.src[r.pos]; {
 		case c == ' ' || c == '\t' || c == '\n' || c == '\r':

@@ -8,7 +8,7 @@ type tree struct {
 	src      string // the text; scalars without escapes or folds are slices of it
 	pos      int    // offset of the next byte to read
 	depth    int    // levels of mappings and lists open at pos
-	stopped  bool   // reading was given up: too deep, or too many problems
+	stopped  bool   // reading is given up: too deep, or too many problems; the next search for content finds the end
 	problems []Problem
 	slab     []Node  // nodes are cut from here, many to an allocation
 	entries  []Entry // entries of all open mappings, the innermost last
@@ -36,17 +36,11 @@ func (t *tree) null(at int) *Node {
 // report notes a problem with a range of the text.
 func (t *tree) report(start, end int, format string, args ...any) *Problem {
 	if len(t.problems) >= problemLimit {
-		t.stop()
+		t.stopped = true
 		return &Problem{}
 	}
 	t.problems = append(t.problems, Problem{Rule: syntaxRule, Message: fmt.Sprintf(format, args...), Doc: t.doc, Start: start, End: end})
 	return &t.problems[len(t.problems)-1]
-}
-
-// stop gives up: every reader finds itself at the end of the text.
-func (t *tree) stop() {
-	t.stopped = true
-	t.pos = len(t.src)
 }
 
 // enter opens a level that begins at an offset; false means that reading was given up.
@@ -54,7 +48,7 @@ func (t *tree) enter(at int) bool {
 	t.depth++
 	if t.depth > nestingLimit && !t.stopped {
 		t.report(at, at+1, "nesting deeper than 1,000 levels is not read")
-		t.stop()
+		t.stopped = true
 	}
 	return !t.stopped
 }

@@ -68,7 +68,7 @@ func (r *yamlReader) leftovers(root *Node) {
 	for r.nextBlock(); !r.end(); r.nextBlock() {
 		if root.Kind != Mapping || r.src[root.Start] == '{' {
 			r.strayToken("nothing may stand behind the end of the top value")
-			r.stop()
+			r.stopped = true
 			return
 		}
 		r.misplaced("this line is indented less than the first key of the file")
@@ -95,6 +95,9 @@ func (r *yamlReader) column() int { return r.pos - r.lineStart }
 
 // next moves over blanks, comments and line ends to the next content.
 func (r *yamlReader) next() {
+	if r.stopped {
+		r.pos = len(r.src)
+	}
 	for r.pos < len(r.src) {
 		switch c := r.src[r.pos]; c {
 		case ' ', '\t':
