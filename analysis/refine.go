@@ -2,6 +2,7 @@ package analysis
 
 import (
 	"context"
+	"math"
 
 	"halfplane/analysis/plant"
 	"halfplane/analysis/spread"
@@ -23,13 +24,16 @@ func (p *plan) refine(ctx context.Context, t *team, r *Result) error {
 	}
 	r.append(p, found)
 
-	found = make([][]Corner, figures+1)
+	found = make([][]Corner, figures+2)
 	err = t.run(len(found), func(w *worker, unit int) error {
 		s := newSearch(ctx, p, w)
-		if f := figure(unit); f < figures {
+		switch f := figure(unit); f {
+		default:
 			s.inside(f, r)
-		} else {
-			s.edge(r)
+		case figures:
+			s.edge(r, modulusMargin, 40, func(c *Corner) bool { return c.Loop.Stable })
+		case figures + 1:
+			s.edge(r, gainMargin, 12, func(c *Corner) bool { return c.Loop.UnstablePlantPoles == 0 })
 		}
 		found[unit] = s.corners
 		return s.ended
@@ -114,7 +118,7 @@ func (s *search) kink(x []float64) {
 
 // inside looks between the extremes from the figure's worst corner: a grid over input and load, then every axis on its own.
 func (s *search) inside(f figure, r *Result) {
-	const grid = 5
+	const grid, passes = 5, 3
 	at := worstOf(f, r.Corners)
 	if at < 0 {
 		return
@@ -137,13 +141,33 @@ func (s *search) inside(f figure, r *Result) {
 			}
 		}
 	}
-	axes := p.tolerant
+	axes := p.axesOf(f)
 	for _, axis := range [2]int{p.load, p.input} {
 		if axis >= 0 {
 			axes = append([]int{axis}, axes...)
 		}
 	}
-	p.box.Inside(best, worst, axes, grid, func(x []float64) float64 { return s.value(f, x) })
+	for range passes {
+		before := worst
+		worst = p.box.Inside(best, worst, axes, grid, func(x []float64) float64 { return s.value(f, x) })
+		if math.Abs(worst-before) <= 1e-4*math.Abs(before) {
+			break
+		}
+	}
+}
+
+// axesOf gives the tolerances that a figure depends on.
+func (p *plan) axesOf(f figure) []int {
+	if f != rhpZero {
+		return p.tolerant
+	}
+	var list []int
+	for _, axis := range p.tolerant {
+		if belongsToCircuit(p.design.Axes[axis].Path) {
+			list = append(list, axis)
+		}
+	}
+	return list
 }
 
 // grid gives n values over an operating axis, a single one without an axis.
@@ -158,35 +182,36 @@ func (p *plan) grid(axis, n int) []float64 {
 	return list
 }
 
-// edge closes in on the edge of stability where some corners are stable and some are not: between the stable corner and the
-// unstable one with the least modulus margin lies a point where it vanishes.
-func (s *search) edge(r *Result) {
-	stable, unstable := -1, -1
+// edge closes in on the edge between corners where something holds and corners where it does not, between the two of them with
+// the worst figure. At the edge of stability the modulus margin vanishes; where the plant's own poles cross (an inner loop
+// that begins to oscillate) the gain at a phase crossover grows without bound.
+func (s *search) edge(r *Result, f figure, rounds int, holds func(*Corner) bool) {
+	worst := [2]int{-1, -1}
 	for i := range r.Corners {
 		c := &r.Corners[i]
-		if c.Loop == nil {
+		if math.IsNaN(f.badness(c)) {
 			continue
 		}
-		at := &unstable
-		if c.Loop.Stable {
-			at = &stable
+		side := 0
+		if !holds(c) {
+			side = 1
 		}
-		if *at < 0 || c.Loop.ModulusMargin < r.Corners[*at].Loop.ModulusMargin {
-			*at = i
+		if worst[side] < 0 || f.badness(c) < f.badness(&r.Corners[worst[side]]) {
+			worst[side] = i
 		}
 	}
-	if stable < 0 || unstable < 0 {
+	if worst[0] < 0 || worst[1] < 0 {
 		return
 	}
 	n := len(s.plan.nominal)
-	from, to, x := valuesOf(&r.Corners[stable], make([]float64, n)), valuesOf(&r.Corners[unstable], make([]float64, n)), make([]float64, n)
-	spread.Boundary(0, 1, 40, func(part float64) bool {
+	from, x := valuesOf(&r.Corners[worst[0]], make([]float64, n)), make([]float64, n)
+	to := valuesOf(&r.Corners[worst[1]], make([]float64, n))
+	spread.Boundary(0, 1, rounds, func(part float64) bool {
 		for i := range x {
 			x[i] = from[i] + part*(to[i]-from[i])
 		}
 		i, _ := s.visit(x)
 		s.ended = s.ctx.Err()
-		l := s.corners[i].Loop
-		return l != nil && l.Stable
+		return s.corners[i].Loop != nil && holds(&s.corners[i])
 	})
 }

@@ -76,7 +76,7 @@ func (s *search) operating(o operatingPoint) error {
 	return s.ended
 }
 
-// descend searches from the worst corner so far, and once more from the worst vertex with nominal parts elsewhere.
+// descend searches from the worst corner so far.
 func (s *search) descend(f figure, x []float64) {
 	const rounds = 6 // a round that finds nothing ends it; three are typical
 	at := s.worst(f)
@@ -84,7 +84,7 @@ func (s *search) descend(f figure, x []float64) {
 		return
 	}
 	x = s.assignment(at, x)
-	s.plan.box.Descend(x, f.badness(&s.corners[at]), s.plan.tolerant, rounds, func(x []float64) float64 { return s.value(f, x) })
+	s.plan.box.Descend(x, f.badness(&s.corners[at]), s.plan.axesOf(f), rounds, func(x []float64) float64 { return s.value(f, x) })
 }
 
 // worst gives the corner with the lowest badness, −1: the figure exists nowhere.

@@ -20,6 +20,9 @@ import (
 //	modulus margin   Re((1+T)*·T·δ)/|1+T|
 func (s *search) guide(f figure, x []float64, c *Corner) {
 	w := s.worker
+	if c.Loop == nil {
+		return
+	}
 	omega := 2 * math.Pi * f.frequency(c.Loop)
 	if !(omega > 0) {
 		return
@@ -29,7 +32,7 @@ func (s *search) guide(f figure, x []float64, c *Corner) {
 		return
 	}
 	t := w.gain.At(omega)
-	l, err := loop.LogSlope(&w.gain, omega)
+	l, err := w.meter.LogSlope(&w.gain, omega)
 	if err != nil {
 		return
 	}
@@ -61,6 +64,8 @@ func (f figure) frequency(l *loop.Figures) float64 {
 		return l.GainMarginFrequency
 	case modulusMargin:
 		return l.ModulusFrequency
+	case rhpZero:
+		return nan // no frequency of the loop; its vertices are all visited
 	default:
 		return l.Crossover
 	}

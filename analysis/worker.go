@@ -27,6 +27,7 @@ type worker struct {
 	compensator        transfer.Product
 	gain               transfer.Product
 	figures            loop.Figures
+	meter              loop.Meter
 	extremes           [][2]transfer.Product // the compensator at both ends of each of its axes
 }
 
@@ -94,7 +95,7 @@ func (w *worker) corner() (Corner, error) {
 	if !w.hasLoop() {
 		return c, w.buildErr
 	}
-	if err := loop.Measure(&w.gain, w.solution.FilterFrequency, &w.figures); err != nil {
+	if err := w.meter.Measure(&w.gain, w.solution.FilterFrequency, &w.figures); err != nil {
 		return c, err
 	}
 	f := w.figures
@@ -146,7 +147,7 @@ func (w *worker) ripple() *loop.Figures {
 	var t transfer.Product
 	assemble(&t, &w.compensator, &with, w.point.Circuit.Modulator.Delay)
 	f := new(loop.Figures)
-	if err := loop.Measure(&t, w.solution.FilterFrequency, f); err != nil {
+	if err := w.meter.Measure(&t, w.solution.FilterFrequency, f); err != nil {
 		return nil
 	}
 	return f

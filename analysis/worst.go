@@ -10,11 +10,15 @@ const (
 	crossoverOverZero
 	highCrossover
 	lowCrossover
+	rhpZero
 	figures // how many
 )
 
 // badness judges a corner by the figure, NaN: it does not exist there.
 func (f figure) badness(c *Corner) float64 {
+	if f == rhpZero {
+		return c.Plant.RHPZero
+	}
 	if c.Loop == nil {
 		return nan
 	}

@@ -190,15 +190,3 @@ func (f *form) dcGain() float64 {
 	}
 	return math.Abs(f.low)
 }
-
-// LogSlope is d ln T/d ln ω at ω (rad/s): the real part is the slope of ln|T|, the imaginary part that of the phase in
-// radians. Errors as Measure.
-func LogSlope(t *transfer.Product, omega float64) (complex128, error) {
-	var store [24]section
-	f := form{sections: store[:0]}
-	if err := f.set(t); err != nil {
-		return 0, err
-	}
-	_, l := f.at(omega, nil)
-	return l, nil
-}

@@ -7,30 +7,28 @@ import (
 	"halfplane/analysis/transfer"
 )
 
+// Meter measures loop gains and keeps its working storage from one to the next: once warm it allocates nothing for a rational loop
+// gain. The zero value is ready. One goroutine at a time.
+type Meter struct{ walker walker }
+
 // Measure writes every figure of the loop gain t into out; out's list is reused. filterFrequency (Hz) sets the range in which
 // crossovers and margins are looked for, 1e−6 to 10 times it; a sampled loop ends at half its sampling frequency.
 // Stability considers all frequencies. Definitions: theory sheet section 8. Errors: a gain, root, delay or frequency that
 // is not usable, and ErrTooInvolved.
 func Measure(t *transfer.Product, filterFrequency float64, out *Figures) error {
-	_, err := measure(t, filterFrequency, out)
-	return err
+	var m Meter
+	return m.Measure(t, filterFrequency, out)
 }
 
-// measure also says how many times the loop gain was evaluated.
-func measure(t *transfer.Product, filterFrequency float64, out *Figures) (evaluations int, err error) {
+// Measure is the package's Measure with the meter's storage.
+func (m *Meter) Measure(t *transfer.Product, filterFrequency float64, out *Figures) error {
+	k := &m.walker
+	k.evals = 0
 	if !(filterFrequency > 0) || math.IsInf(filterFrequency, 0) {
-		return 0, fmt.Errorf("measuring a loop: filter frequency %v Hz", filterFrequency)
+		return fmt.Errorf("measuring a loop: filter frequency %v Hz", filterFrequency)
 	}
-	var (
-		sections [24]section
-		slopes   [nodes * perNode]slope
-		free     [2 * nodes]int
-		stack    [nodes]node
-	)
-	k := walker{slopes: slopes[:0], free: free[:0], stack: stack[:0]}
-	k.sections = sections[:0]
 	if err := k.set(t); err != nil {
-		return 0, err
+		return err
 	}
 	k.crossovers = out.Crossovers[:0]
 	k.first, k.last, k.limit = 2*math.Pi*1e-6*filterFrequency, 2*math.Pi*10*filterFrequency, math.Inf(1)
@@ -41,13 +39,23 @@ func measure(t *transfer.Product, filterFrequency float64, out *Figures) (evalua
 	}
 	if k.gain == 0 {
 		k.silent(out)
-		return 0, nil
+		return nil
 	}
 	if err := k.walk(); err != nil {
-		return k.evals, fmt.Errorf("measuring a loop: %w", err)
+		return fmt.Errorf("measuring a loop: %w", err)
 	}
 	k.figures(out)
-	return k.evals, nil
+	return nil
+}
+
+// LogSlope is d ln T/d ln ω at omega (rad/s): the real part is the slope of ln|T|, the imaginary part that of the phase in
+// radians. Errors as Measure.
+func (m *Meter) LogSlope(t *transfer.Product, omega float64) (complex128, error) {
+	if err := m.walker.set(t); err != nil {
+		return 0, err
+	}
+	_, l := m.walker.at(omega, nil)
+	return l, nil
 }
 
 // figures turns what the walk found into figures.

@@ -197,13 +197,15 @@ func same(t *testing.T, want, got, tolerance float64, name string, p *transfer.P
 func TestFindsWhatADenseSearchFinds(t *testing.T) {
 	r := rand.New(rand.NewPCG(11, 12))
 	var out Figures
+	var meter Meter
 	loops, near, total, most := 60, 0, 0, 0
 	if testing.Short() {
 		loops = 15
 	}
 	for range loops {
 		p := random(r)
-		evals, err := measure(&p, 100e3, &out)
+		err := meter.Measure(&p, 100e3, &out)
+		evals := meter.walker.evals
 		require.NoError(t, err, "%+v", p)
 		total, most = total+evals, max(most, evals)
 		ref := search(&p, 100e3, 20000)

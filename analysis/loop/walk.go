@@ -13,8 +13,6 @@ const (
 	narrowest = 1e-9  // intervals of ln ω below this are not divided further
 	steps     = 20000 // intervals looked at before a loop gain is given up as too involved
 	coarse    = 0.25  // how far ln T may run within an interval that is searched for the least |1 + T|
-	perNode   = 16    // sections whose slopes are kept without an allocation
-	nodes     = 64
 )
 
 // node is one evaluated frequency.
@@ -33,7 +31,7 @@ type node struct {
 // finding the absolute extremum of a function", USSR Comput. Math. Math. Phys. 12 (1972), from memory.)
 type walker struct {
 	form
-	slopes []slope // perNode or more for each slot
+	slopes []slope // as many for each slot as there are sections
 	free   []int   // slots not in use
 	stack  []node  // nodes to the right, the nearest last
 	visits int
@@ -57,6 +55,8 @@ type walker struct {
 
 // walk collects everything that the figures are made of.
 func (k *walker) walk() error {
+	k.slopes, k.free, k.stack = k.slopes[:0], k.free[:0], k.stack[:0]
+	k.visits, k.unbounded = 0, false
 	k.margin, k.below, k.above, k.least = math.Inf(1), math.Inf(-1), math.Inf(1), math.Inf(1)
 	k.marginAt, k.belowAt, k.aboveAt, k.leastAt = math.NaN(), math.NaN(), math.NaN(), math.NaN()
 	k.start()
@@ -137,7 +137,9 @@ func (k *walker) push(u float64) {
 	n := node{u: u, w: math.Exp(u)}
 	if len(k.free) == 0 {
 		k.free = append(k.free, len(k.slopes)/max(len(k.sections), 1))
-		k.slopes = append(k.slopes, make([]slope, max(len(k.sections), 1))...)
+		for range max(len(k.sections), 1) {
+			k.slopes = append(k.slopes, slope{})
+		}
 	}
 	n.slot = k.free[len(k.free)-1]
 	k.free = k.free[:len(k.free)-1]
