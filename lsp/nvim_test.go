@@ -72,7 +72,7 @@ func TestNeovimShowsAFindingAtItsExactTextAndItsEnd(t *testing.T) {
 		}
 	}
 	assert.True(t, got)
-	assert.Contains(t, opened.Hover, "rhp\\-zero\\-crossover")
+	assert.Contains(t, opened.Hover, "rhp-zero-crossover")
 	for _, d := range edited.Shown {
 		assert.NotEqual(t, "rhp-zero-crossover", d.Code)
 	}

@@ -76,9 +76,8 @@ func (p *page) contents() protocol.HoverContents {
 }
 
 // markup is what Markdown would take for its own inside a line: text from a file must not become a link, an image, HTML
-// or emphasis. A bracket alone is no link without what follows it, but is kept from pairing all the same.
-var markup = strings.NewReplacer(`\`, `\\`, "`", "\\`", "*", `\*`, "_", `\_`, "[", `\[`, "]", `\]`, "<", `\<`, ">", `\>`,
-	"#", `\#`, "|", `\|`, "~", `\~`, "&", `\&`, "!", `\!`)
+// or emphasis. No more is escaped than that, since some editors show the text as it is.
+var markup = strings.NewReplacer(`\`, `\\`, "`", "\\`", "*", `\*`, "_", `\_`, "[", `\[`, "<", `\<`, "~", `\~`, "&", `\&`)
 
 func escaped(words string) string { return markup.Replace(words) }
 

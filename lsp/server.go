@@ -26,8 +26,8 @@ type Options struct {
 	RulePages string        // address to which "#RULE" is added; "": the catalogue page beside the program, if there is one
 }
 
-// DefaultPause is how long typing must pause before the full check: longer than the gaps of steady typing (two keys a
-// second are 500 ms apart only in hunting and pecking; 200 to 300 ms is usual), short enough to be there when one looks up.
+// DefaultPause is how long typing must pause before the full check. Fifty words a minute are five keys a second with the
+// spaces, 200 to 240 ms from key to key: longer than that, and short enough to be there when one looks up.
 const DefaultPause = 300 * time.Millisecond
 
 // patience is how long the last answers may take to leave when the server ends.

@@ -5,7 +5,7 @@
 --
 -- Environment: SERVER (program), FILE, RULE (the finding that is waited for), LINE (from 1) and TEXT (what it becomes).
 
-local function env(name) return assert(os.getenv(name), name .. ' is not set') end
+local function env(name) return (assert(os.getenv(name), name .. ' is not set')) end
 local rule = env('RULE')
 
 local function leave(code, why)
