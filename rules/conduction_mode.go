@@ -3,6 +3,7 @@ package rules
 import (
 	"fmt"
 	"math"
+	"slices"
 	"strings"
 
 	"halfplane/analysis"
@@ -24,7 +25,6 @@ var conductionMode = Rule{
 		}
 		return "/inductor/inductance"
 	},
-	Judges: func(k *analysis.Corner) bool { return k.Reached },
 	Decide: func(c *Case) []Finding {
 		light, heavy := modeExtremes(c)
 		intended := c.Spec.Text("/conduction")
@@ -33,18 +33,19 @@ var conductionMode = Rule{
 		case intended == "ccm" && light != nil:
 			f = c.atCorner("/conduction", light)
 			f.Severity = Warning
-			f.Message = fmt.Sprintf("continuous conduction is intended, but the inductor current is discontinuous %s", criticalWords(c))
+			f.Message = fmt.Sprintf("continuous conduction is intended, but the inductor current is discontinuous %s", criticalWords(c, light))
 		case intended == "dcm" && heavy != nil:
 			f = c.atCorner("/conduction", heavy)
 			f.Severity = Warning
-			f.Message = fmt.Sprintf("discontinuous conduction is intended, but the inductor current is continuous above %s", strings.TrimPrefix(criticalWords(c), "below "))
+			f.Message = fmt.Sprintf("discontinuous conduction is intended, but the inductor current is continuous above %s", strings.TrimPrefix(criticalWords(c, heavy), "below "))
 		case intended != "ccm" && intended != "dcm" && light != nil && heavy != nil:
 			f = c.atCorner("/inductor/inductance", light)
-			f.Message = fmt.Sprintf("both conduction modes occur: discontinuous %s", criticalWords(c))
+			f.Message = fmt.Sprintf("both conduction modes occur: discontinuous %s", criticalWords(c, light))
 		default:
 			return nil
 		}
-		load, critical := c.valueAt(cornerOf(c, f), "load.current"), c.boundary(cornerOf(c, f))
+		corner := &analysis.Corner{At: f.Corner}
+		load, critical := c.valueAt(corner, "load.current"), c.boundary(corner)
 		f.Formula = fmt.Sprintf("load %s, critical current %s at this corner", number(load, "A"), number(critical, "A"))
 		f.Measured, f.Limit = asNumber(load, "A"), asNumber(critical, "A")
 		f.Nominal = asNumber(c.boundary(c.nominal()), "A")
@@ -52,9 +53,6 @@ var conductionMode = Rule{
 		return []Finding{f}
 	},
 }
-
-// cornerOf is a corner that holds a finding's settings.
-func cornerOf(_ *Case, f Finding) *analysis.Corner { return &analysis.Corner{At: f.Corner} }
 
 // modeExtremes are the first discontinuous corner with the lowest load over critical current, and the first continuous one
 // with the highest; nil where a mode does not occur.
@@ -74,12 +72,13 @@ func modeExtremes(c *Case) (light, heavy *analysis.Corner) {
 	return light, heavy
 }
 
-// criticalWords says the load below which each input voltage leaves continuous conduction, with nominal parts.
-func criticalWords(c *Case) string {
+// criticalWords says the load below which each input voltage leaves continuous conduction, with a corner's parts.
+func criticalWords(c *Case, parts *analysis.Corner) string {
 	input := c.axis("input-voltage")
 	var words []string
 	for _, volts := range distinct(input.Min, input.Nominal, input.Max) {
-		load := c.boundary(&analysis.Corner{At: []analysis.Setting{{Path: "input-voltage", Value: volts}}})
+		at := append(slices.Clone(parts.At), analysis.Setting{Path: "input-voltage", Value: volts})
+		load := c.boundary(&analysis.Corner{At: at})
 		if !math.IsNaN(load) {
 			words = append(words, number(load, "A")+" at "+number(volts, "V")+" in")
 		}

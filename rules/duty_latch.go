@@ -16,9 +16,8 @@ var dutyLatch = Rule{
 	Formula:  "duty-limit.max < D at the peak of vo(D), the load taken as V/I, at every corner",
 	Source:   "R. D. Middlebrook, S. Ćuk, \"A general unified approach to modelling switching-converter power stages\", IEEE PESC (1976), for vo(D) with losses; the rule is common practice",
 	Example:  "topology: boost\nmodulator: {scheme: voltage-mode, ramp-amplitude: 1.8 V}   # no duty-limit: it can go to 1",
-	Reads:    Operation,
+	Reads:    Declaration,
 	Place:    dutyLimit,
-	Judges:   func(k *analysis.Corner) bool { return k.Reached },
 	Applies:  func(c *Case) bool { return c.Design.Nominal.Circuit.Topology.HasDutyPeak() },
 	Decide: func(c *Case) []Finding {
 		_, high := dutyLimits(c)

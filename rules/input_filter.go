@@ -19,7 +19,7 @@ var inputFilter = Rule{
 	Example:  "input-filter: {inductance: 22 uH, resistance: 5 mΩ, capacitance: 10 uF, esr: 2 mΩ}   # rings at 10.7 kHz",
 	Reads:    Model,
 	Place:    here("/input-filter"),
-	Applies:  func(c *Case) bool { return c.Spec.Has("/input-filter") && anyCorner(c, hasFilterFigures) },
+	Applies:  func(c *Case) bool { return c.Spec.Has("/input-filter") },
 	Decide: func(c *Case) []Finding {
 		limit := c.threshold(impedanceRatio)
 		corner, ratio := c.worstStage(impedance)

@@ -18,7 +18,7 @@ var inputFilterDamping = Rule{
 	Example:  "input-filter: {inductance: 22 uH, resistance: 5 mΩ, capacitance: 10 uF, esr: 2 mΩ}   # no damping branch",
 	Reads:    Model,
 	Place:    firstOf("/input-filter/damping-resistance", "/input-filter"),
-	Applies:  func(c *Case) bool { return c.Spec.Has("/input-filter") && anyCorner(c, hasFilterFigures) },
+	Applies:  func(c *Case) bool { return c.Spec.Has("/input-filter") },
 	Decide: func(c *Case) []Finding {
 		limit := c.threshold(filterQuality)
 		quality := func(k *analysis.Corner) float64 {

@@ -78,6 +78,7 @@ func decide(c *Case, rule *Rule) (out Outcome) {
 	out.Reason, out.Unreached = uncovered(c, rule)
 	if rule.Unassessed != nil && out.Reason == "" {
 		out.Reason = rule.Unassessed(c)
+		out.Unreached = out.Reason != "" && !c.fullLoad().Reached
 	}
 	out.Findings = rule.Decide(c)
 	switch {

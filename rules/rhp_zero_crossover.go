@@ -19,8 +19,7 @@ var rhpZeroCrossover = Rule{
 	Reads:    Figures,
 	Place:    gainPart,
 	Applies: func(c *Case) bool {
-		_, ratio := c.worst(func(k *analysis.Corner) float64 { return rhpZero(k) })
-		return ratio > 0
+		return c.Design.Nominal.Circuit.Topology.HasDutyPeak() || anyCorner(c, func(k *analysis.Corner) bool { return rhpZero(k) > 0 })
 	},
 	Decide: func(c *Case) []Finding {
 		limit := c.threshold(rhpZeroFraction)

@@ -21,7 +21,7 @@ var slopeCompensation = Rule{
 	Place:    firstOf("/modulator/slope-compensation", "/modulator/scheme"),
 	Judges:   continuous,
 	Applies: func(c *Case) bool {
-		return c.Design.Nominal.Circuit.Modulator.Scheme == plant.PeakCurrentMode && anyCorner(c, hasCurrentLoop)
+		return c.Design.Nominal.Circuit.Modulator.Scheme == plant.PeakCurrentMode
 	},
 	Decide: func(c *Case) []Finding {
 		corner, negative := c.worstStage(func(k *analysis.Corner) float64 {
