@@ -50,6 +50,6 @@ func At(d *Design, settings []Setting) (Corner, error) {
 	if err != nil {
 		return c, fmt.Errorf("analysing the corner: %w", err)
 	}
-	w.explain(&c)
+	w.explain(&c, true)
 	return c, nil
 }

@@ -118,7 +118,7 @@ func (s *search) kink(x []float64) {
 
 // inside looks between the extremes from the figure's worst corner: a grid over input and load, then every axis on its own.
 func (s *search) inside(f figure, r *Result) {
-	const grid, passes = 5, 3
+	const grid, passes, scatter = 5, 3, 200
 	at := worstOf(f, r.Corners)
 	if at < 0 {
 		return
@@ -147,12 +147,17 @@ func (s *search) inside(f figure, r *Result) {
 			axes = append([]int{axis}, axes...)
 		}
 	}
+	value := func(x []float64) float64 { return s.value(f, x) }
 	for range passes {
 		before := worst
-		worst = p.box.Inside(best, worst, axes, grid, func(x []float64) float64 { return s.value(f, x) })
+		worst = p.box.Inside(best, worst, axes, grid, value)
 		if math.Abs(worst-before) <= 1e-4*math.Abs(before) {
 			break
 		}
+	}
+	if f == rhpZero || f == crossoverOverZero && p.design.Nominal.Circuit.Topology.TwoInductor() {
+		// a complex pair of zeros leaves the right half-plane somewhere inside: the border is curved
+		p.box.Scatter(best, worst, axes, scatter, 1, value)
 	}
 }
 

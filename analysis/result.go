@@ -53,24 +53,25 @@ func (r *Result) append(p *plan, found [][]Corner) {
 	}
 }
 
-// explain completes nominal, the operating corners and every corner that a worst entry refers to.
+// explain completes nominal, the operating corners and every corner that a worst entry refers to. The figures with ripple, the
+// costliest of all, are added at nominal and at the corners that decide a margin; in full depth at the operating corners too.
 func (r *Result) explain(p *plan, t *team) error {
 	var list []int
-	marked := make(map[int]bool)
-	mark := func(i int) {
-		if !marked[i] {
-			marked[i] = true
+	ripple := make(map[int]bool) // every listed corner is a key
+	mark := func(i int, decides bool) {
+		if _, known := ripple[i]; !known {
 			list = append(list, i)
 		}
+		ripple[i] = ripple[i] || decides
 	}
 	for i := range r.Operating + 1 {
-		mark(i)
+		mark(i, i == 0 || p.full)
 	}
-	r.Worst.each(func(w *Worst) { mark(w.Corner) })
+	r.Worst.each(func(w *Worst, margin bool) { mark(w.Corner, margin || p.full) })
 	return t.run(len(list), func(w *worker, unit int) error {
 		c := &r.Corners[list[unit]]
 		w.set(valuesOf(c, make([]float64, len(p.nominal))))
-		w.explain(c)
+		w.explain(c, ripple[list[unit]])
 		return nil
 	})
 }

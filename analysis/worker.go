@@ -123,11 +123,12 @@ func (w *worker) settings() []Setting {
 	return at
 }
 
-// explain adds what only some corners carry: closed forms, the duty of the peak, and the figures with the comparator's ripple.
-func (w *worker) explain(c *Corner) {
+// explain adds what only some corners carry: closed forms, the duty of the peak, and the figures with the comparator's ripple
+// where they are asked for.
+func (w *worker) explain(c *Corner, ripple bool) {
 	c.Ideal = plant.IdealOf(&w.point.Circuit)
 	c.DutyPeak = plant.DutyPeak(&w.point.Circuit)
-	if c.Loop != nil && c.Ripple == nil {
+	if ripple && c.Loop != nil {
 		c.Ripple = w.ripple()
 	}
 }

@@ -78,12 +78,12 @@ func (w *Worst) greatest(corner int, value float64) {
 	}
 }
 
-// each visits the entries that refer to a corner.
-func (w *Worsts) each(visit func(*Worst)) {
-	for _, e := range []*Worst{&w.PhaseMargin, &w.GainMargin, &w.GainReductionMargin, &w.ModulusMargin, &w.RHPZero, &w.Crossover,
+// each visits the entries that refer to a corner and says whether they are margins.
+func (w *Worsts) each(visit func(w *Worst, margin bool)) {
+	for i, e := range []*Worst{&w.PhaseMargin, &w.GainMargin, &w.GainReductionMargin, &w.ModulusMargin, &w.RHPZero, &w.Crossover,
 		&w.CrossoverLow, &w.CrossoverOverRHPZero} {
 		if e.Corner >= 0 {
-			visit(e)
+			visit(e, i < 4)
 		}
 	}
 }

@@ -13,6 +13,7 @@ import (
 type sample struct {
 	r          complex128
 	size, turn float64 // |r| and arg r
+	steepest   float64 // δ at which ln|f| rises most, see slopes
 }
 
 // setSampled takes N(z)/D(z) apart into such factors. Leading zeros of N are whole samples of delay. A root at z = 1 is an
@@ -56,7 +57,7 @@ func (f *form) appendSamples(c []float64, side int) error {
 	for _, r := range roots {
 		if cmplx.Abs(r-1) < 1e-7 {
 			f.order += side
-			f.samples = append(f.samples, sample{1, 1, 0})
+			f.samples = append(f.samples, sample{r: 1, size: 1})
 			continue
 		}
 		if math.Abs(cmplx.Abs(r)-1) < lightest {
@@ -69,7 +70,8 @@ func (f *form) appendSamples(c []float64, side int) error {
 		if imag(r) == 0 && real(r) > 1 {
 			f.low = -f.low // the others, conjugate pairs included, are positive at z = 1
 		}
-		f.samples = append(f.samples, sample{r, cmplx.Abs(r), cmplx.Phase(r)})
+		p := cmplx.Abs(r)
+		f.samples = append(f.samples, sample{r, p, cmplx.Phase(r), math.Acos(math.Min(1, 2*p/(1+p*p)))})
 	}
 	return nil
 }
@@ -95,43 +97,41 @@ func (f *form) sampledAt(w float64) (v, l complex128) {
 // slopes gives the ranges of the factor's d ln|f|/du and d arg f/du while ψ runs from psi1 to psi2. With δ = ψ − arg r, ρ = |r|:
 //
 //	d ln|f|/dψ = ρ·sin δ/(1 + ρ² − 2ρ·cos δ), extremes ±ρ/|1 − ρ²| at cos δ = 2ρ/(1 + ρ²)
-//	d arg f/dψ = (ρ·cos δ − ρ²)/(1 + ρ² − 2ρ·cos δ), extremes at δ = 0 and π
+//	d arg f/dψ = (ρ·cos δ − ρ²)/(1 + ρ² − 2ρ·cos δ), extremes ρ/(1 − ρ) at δ = 0 and −ρ/(1 + ρ) at π
 func (s *sample) slopes(psi1, psi2 float64) (least, greatest slope) {
 	if s.size == 0 {
 		return
 	}
 	p := s.size
-	share := func(d float64) slope {
-		// 1 + ρ² − 2ρ·cos δ without cancellation near δ = 0
-		half := math.Sin(d / 2)
-		h := (1-p)*(1-p) + 4*p*half*half
-		return slope{p * math.Sin(d) / h, p * (1 - p - 2*half*half) / h}
-	}
 	d1, d2 := psi1-s.turn, psi2-s.turn
-	a, b := share(d1), share(d2)
+	a, b := s.share(d1), s.share(d2)
 	least = slope{math.Min(a.magnitude, b.magnitude), math.Min(a.phase, b.phase)}
 	greatest = slope{math.Max(a.magnitude, b.magnitude), math.Max(a.phase, b.phase)}
-	extreme := p / math.Abs(1-p*p)
-	turn := math.Acos(math.Min(1, 2*p/(1+p*p)))
-	for k := -1.0; k <= 1; k++ {
-		full := 2 * math.Pi * k
-		if inside(turn+full, d1, d2) {
-			greatest.magnitude = extreme
+	for full := -2 * math.Pi; full <= 2*math.Pi; full += 2 * math.Pi {
+		if inside(s.steepest+full, d1, d2) {
+			greatest.magnitude = p / math.Abs(1-p*p)
 		}
-		if inside(-turn+full, d1, d2) {
-			least.magnitude = -extreme
+		if inside(-s.steepest+full, d1, d2) {
+			least.magnitude = -p / math.Abs(1-p*p)
 		}
-		if at := share(full); inside(full, d1, d2) {
-			least.phase, greatest.phase = math.Min(least.phase, at.phase), math.Max(greatest.phase, at.phase)
+		if inside(full, d1, d2) {
+			least.phase, greatest.phase = math.Min(least.phase, p/(1-p)), math.Max(greatest.phase, p/(1-p))
 		}
-		if at := share(math.Pi + full); inside(math.Pi+full, d1, d2) {
-			least.phase, greatest.phase = math.Min(least.phase, at.phase), math.Max(greatest.phase, at.phase)
+		if inside(math.Pi+full, d1, d2) {
+			least.phase, greatest.phase = math.Min(least.phase, -p/(1+p)), math.Max(greatest.phase, -p/(1+p))
 		}
 	}
-	low, high := stretch(least.magnitude, greatest.magnitude, psi1, psi2)
-	least.magnitude, greatest.magnitude = low, high
+	least.magnitude, greatest.magnitude = stretch(least.magnitude, greatest.magnitude, psi1, psi2)
 	least.phase, greatest.phase = stretch(least.phase, greatest.phase, psi1, psi2)
 	return least, greatest
+}
+
+// share gives both derivatives at one δ, with 1 + ρ² − 2ρ·cos δ = (1 − ρ)² + 4ρ·sin²(δ/2) free of cancellation.
+func (s *sample) share(d float64) slope {
+	p := s.size
+	sin, cos := math.Sincos(d / 2)
+	h := (1-p)*(1-p) + 4*p*sin*sin
+	return slope{2 * p * sin * cos / h, p * (1 - p - 2*sin*sin) / h}
 }
 
 func inside(x, low, high float64) bool { return x > low && x < high }

@@ -1,6 +1,9 @@
 package spread
 
-import "math"
+import (
+	"math"
+	"math/rand/v2"
+)
 
 // Box bounds every axis; Min <= Max.
 type Box struct{ Min, Max []float64 }
@@ -79,6 +82,29 @@ func (b Box) Inside(x []float64, worst float64, axes []int, points int, value Va
 			golden(math.Max(low, best-step), math.Min(high, best+step), try)
 		}
 		x[axis] = best
+	}
+	return worst
+}
+
+// Scatter makes x worse by moving about half of the axes at a time by random steps, from half of an axis's width down to a
+// two-hundredth, always from the worst point so far; steps beyond an extreme end there. It finds what single moves miss: a
+// worst point against a curved border beyond which the figure does not exist. The steps depend on seed alone.
+func (b Box) Scatter(x []float64, worst float64, axes []int, tries int, seed uint64, value Value) float64 {
+	r := rand.New(rand.NewPCG(seed, 0))
+	next := make([]float64, len(x))
+	for try := range tries {
+		size := 0.5 * math.Pow(0.01, float64(try)/float64(tries))
+		copy(next, x)
+		for _, axis := range axes {
+			step := r.NormFloat64() * size
+			if r.IntN(2) == 0 {
+				next[axis] = math.Min(math.Max(x[axis]+step*(b.Max[axis]-b.Min[axis]), b.Min[axis]), b.Max[axis])
+			}
+		}
+		if v := value(next); worse(v, worst) {
+			worst = v
+			copy(x, next)
+		}
 	}
 	return worst
 }

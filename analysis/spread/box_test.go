@@ -53,3 +53,18 @@ func TestBoundaryIsClosedFromBothSides(t *testing.T) {
 	assert.GreaterOrEqual(t, out, math.Pi)
 	assert.InDelta(t, in, out, 1e-10)
 }
+
+func TestScatterFollowsACurvedBorder(t *testing.T) {
+	b := Box{Min: []float64{-1, -1}, Max: []float64{1, 1}}
+	f := func(x []float64) float64 { // exists inside the unit circle only: worst at (−0.6, −0.8)
+		if x[0]*x[0]+x[1]*x[1] > 1 {
+			return math.NaN()
+		}
+		return 0.6*x[0] + 0.8*x[1]
+	}
+	x := []float64{0, -1}
+	assert.InDelta(t, -1, b.Scatter(x, f(x), []int{0, 1}, 300, 1, f), 0.01)
+	y := []float64{0, -1}
+	b.Scatter(y, f(y), []int{0, 1}, 300, 1, f)
+	assert.Equal(t, x, y)
+}
