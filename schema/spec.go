@@ -50,10 +50,12 @@ func (s *Spec) collect(n *Node, f *field, pointer string) {
 		s.collect(e.Value, f.child(e.Key), pointer+"/"+escapePointer(e.Key))
 	}
 	for i, item := range n.Items {
-		step := strconv.Itoa(i)
-		s.collect(item, f.child(step), pointer+"/"+step)
+		s.collect(item, f.child(strconv.Itoa(i)), itemPointer(pointer, i))
 	}
 }
+
+// itemPointer is the pointer of an item of the list at a pointer.
+func itemPointer(list string, index int) string { return list + "/" + strconv.Itoa(index) }
 
 // quantityOf reads a node as the quantity that its field says it is. A zero or pole that is written as a pair is none.
 func quantityOf(n *Node, f *field) (Quantity, bool) {
