@@ -38,13 +38,17 @@ func (p *place) figures() (o *outcome, stale string) {
 // pairs sets the ideal figure beside the lossy one; a figure that exists in neither is left out.
 func pairs(c *analysis.Corner) []string {
 	var out []string
+	perDuty := "V" // volts per unit duty; per control volt in current mode
+	if c.Plant.Current != nil {
+		perDuty = ""
+	}
 	for _, f := range []struct {
 		name        string
 		ideal, real float64
 		unit        string
 	}{
 		{"duty", c.Ideal.Duty, c.Plant.Duty, ""},
-		{"control gain", c.Ideal.ControlGain, c.Plant.ControlGain, ""},
+		{"control gain", c.Ideal.ControlGain, c.Plant.ControlGain, perDuty},
 		{"line gain", c.Ideal.LineGain, c.Plant.LineGain, ""},
 		{"resonance", c.Ideal.Resonance, c.Plant.Resonance, "Hz"},
 		{"quality", c.Ideal.Quality, c.Plant.Quality, ""},

@@ -102,6 +102,7 @@ func serve(ctx context.Context, in io.Reader, out, log io.Writer, o Options, c c
 	s.conn = jsonrpc2.NewConn(newFrames(in, s.out, s.inputOver), jsonrpc2.WithCodec(codec{}))
 	s.client = protocol.ClientDispatcher(s.conn)
 	s.conn.Go(root, s.handle)
+	go warm()
 
 	code := 1
 	select {
@@ -112,6 +113,10 @@ func serve(ctx context.Context, in io.Reader, out, log io.Writer, o Options, c c
 	s.out.close(patience)
 	return code
 }
+
+// warm has the schemas made ready while client and server still shake hands: some 30 ms that the first document would
+// otherwise wait for.
+func warm() { _, _ = schema.Validate(schema.Read("warm.converter.yaml", nil, 0), nil) }
 
 // finish ends the server with an exit code; only the first call counts.
 func (s *server) finish(code int, reason error) {
