@@ -14,7 +14,7 @@ func exhibits() []exhibit {
 		{"camera-lamp.converter.yaml", "duty-range", "The controller's duty stop was chosen at the nominal battery voltage; an empty battery needs more."},
 		{"cell-heater.converter.yaml", "", "A plain integrator, slow on purpose: it crosses far below the resonance."},
 		{"drifter.converter.yaml", "switching-crossover", "The gain was raised on the bench until the load step looked good."},
-		{"echo-sounder.converter.yaml", "phase-margin", "The lead capacitor on the drawing is not the one of the calculation sheet."},
+		{"echo-sounder.converter.yaml", "phase-margin", "The lead capacitor was halved to quieten the control voltage, and its phase went with it."},
 		{"float-valve.converter.yaml", "quantity", "Someone wrote farads for henries."},
 		{"hydrophone.converter.yaml", "reflected-inductance", "The design note took the primary winding's inductance for the secondary's."},
 		{"profiler.converter.yaml", "rhp-zero-crossover", "A larger inductor went in and pulled the right-half-plane zero down; the compensator stayed as it was."},
