@@ -32,7 +32,7 @@ func TestSyntaxProblemsAreSaidAtTheirPlaceInADesignersWords(t *testing.T) {
 		{"null at the top", "~\n", []string{"1:1-1:2 : a spec file holds keys with values at its top level, and this is a single value"}},
 		{"two documents", "a: 1\n---\nb: 2\n", []string{"2:1-2:4 : a spec file holds one document, and a second one begins here"}},
 		{"document end", "--- # one\na: 1\n...\n# over\n", nil},
-		{"text behind the document", "a: 1\n...\nb: 2\n", []string{"3:1-3:4 : a spec file holds one document, and a second one begins here"}},
+		{"text behind the document", "a: 1\n...\nb: 2\n", []string{"3:1-3:2 : a spec file holds one document, and a second one begins here"}},
 		{"tab", "load:\n\tcurrent: 1 A\n\tesr: 1\ncount: 2\n\t# a comment may be\n", []string{"2:1-2:2 /load: a tab indents this line: indent with blanks"}},
 		{"tab behind blanks", "load:\n  \tcurrent: 1 A\n", []string{"2:3-2:4 /load: a tab indents this line: indent with blanks"}},
 		{"tabs twice", "a:\n\tb: 1\nc:\n\td: 1\n", []string{"2:1-2:2 /a: a tab indents this line: indent with blanks", "4:1-4:2 /c: a tab indents this line: indent with blanks"}},

@@ -39,8 +39,13 @@ func (r *yamlReader) document() *Node {
 		r.restOfLine()
 		r.next()
 	}
-	if !r.stopped && r.pos < len(r.src) {
-		r.report(r.pos, r.pos+3, "a spec file holds one document, and a second one begins here")
+	const second = "a spec file holds one document, and a second one begins here"
+	switch {
+	case r.stopped || r.pos >= len(r.src):
+	case r.marker("---"):
+		r.report(r.pos, r.pos+3, second)
+	default:
+		r.strayToken(second)
 	}
 	if !written && root.Type == Null && root.Kind == Scalar {
 		return nil
@@ -74,10 +79,20 @@ func (r *yamlReader) leftovers(root *Node) {
 		r.misplaced("this line is indented less than the first key of the file")
 		n := r.value(-1, atTop)
 		if n.Kind == Mapping {
-			root.Entries = append(root.Entries, n.Entries...)
+			r.adopt(root, n)
 		}
 		root.End = max(root.End, n.End)
 	}
+}
+
+// adopt takes the entries of n into the finished mapping root.
+func (r *yamlReader) adopt(root, n *Node) {
+	keys := keySet{first: len(r.entries)}
+	r.entries = append(r.entries, root.Entries...)
+	for _, e := range n.Entries {
+		r.add(&keys, e)
+	}
+	keys.close(r.tree, root)
 }
 
 // peek is the byte at pos, 0 at the end.
