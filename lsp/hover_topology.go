@@ -14,10 +14,10 @@ func (p *place) aboutTopology() {
 	}
 	c := &o.file.Result.Corners[0]
 	if !c.Reached {
-		p.say("At nominal input, full load and nominal parts no duty reaches the output voltage.")
+		p.say("At nominal input, load and parts no duty reaches the output voltage.")
 		return
 	}
-	p.say("At nominal input, full load and nominal parts (" + c.Plant.Mode.String() + "), ideal and with losses" + stale + ":")
+	p.say("At nominal input, load and parts (" + c.Plant.Mode.String() + "), ideal and with losses" + stale + ":")
 	p.list(pairs(c))
 	if c.Loop != nil {
 		p.list(loopLines(c))

@@ -73,6 +73,7 @@ type server struct {
 // ctx is done, and gives the exit code: 0 after a proper shutdown, else 1. Nothing but the protocol is written to out;
 // what happens beside it goes to log. Serve never ends the process; a reader that is still blocked in in is left behind.
 func Serve(ctx context.Context, in io.Reader, out io.Writer, log io.Writer, o Options) int {
+	defer roomy()()
 	return serve(ctx, in, out, log, o, check)
 }
 

@@ -22,7 +22,7 @@ const (
 	share = 0.2
 )
 
-// sets lists the figures that the value at the pointer sets now: nominal input, full load, nominal parts.
+// sets lists the figures that the value at the pointer sets now, at nominal input, load and parts.
 func (p *place) sets(pointer string) []string {
 	o, stale := p.figures()
 	if o == nil || o.file.Spec == nil {
@@ -59,7 +59,7 @@ func effects(at *analysis.Point, path string) []string {
 	return out
 }
 
-// quantity is one figure with its name.
+// namedFigure is one figure with its name and unit.
 type namedFigure struct {
 	name  string
 	value float64
@@ -89,7 +89,7 @@ func named(at *analysis.Point) []namedFigure {
 		add("inductor ripple", s.InductorRipple, "A")
 		if s.HasModel {
 			add("resonance", s.Resonance, "Hz")
-			add("its quality", s.Quality, "")
+			add("the resonance's quality", s.Quality, "")
 			add("ESR zero", s.ESRZero, "Hz")
 			add("right-half-plane zero", s.RHPZero, "Hz")
 			add("modulator gain", s.ModulatorGain, "")
