@@ -33,7 +33,7 @@ func (k *walker) interval(a, b *node) (divide bool, err error) {
 				}
 			}
 		}
-		if nears && k.nearest(low, high, bottom, top) < k.least*(1-1e-9) {
+		if nears && !k.noNearer(low, high, bottom, top) {
 			if !small && (high-low > coarse || top-bottom > coarse) {
 				return true, nil
 			}
@@ -69,22 +69,26 @@ func onAxis(bottom, top float64) bool {
 
 // couldBeNearer says whether |T| between e^low and e^high leaves room for |1 + T| below the least one known.
 func (k *walker) couldBeNearer(low, high float64) bool {
-	return high > math.Log1p(-math.Min(k.least, 1)) && low < math.Log1p(k.least)
+	return high > k.room[0] && low < k.room[1]
 }
 
-// nearest is a lower bound of |1 + T| over |T| in [e^low, e^high] and arg(−T) in [bottom, top].
-func (k *walker) nearest(low, high, bottom, top float64) float64 {
+// noNearer says whether |1 + T| stays at least the least one known over |T| in [e^low, e^high] and arg(−T) in [bottom, top]: the
+// point of that sector nearest to −1 lies at the angle nearest to it and at |T| = cos of that angle, or at the end of the
+// range next to it.
+func (k *walker) noNearer(low, high, bottom, top float64) bool {
+	const negligible = 1 - 1e-9 // below this the search would only polish
 	angle := 0.0
 	if !onAxis(bottom, top) {
 		turn := 2 * math.Pi * math.Round(bottom/(2*math.Pi))
-		angle = math.Min(math.Abs(bottom-turn), math.Abs(top-turn))
-		if next := turn + 2*math.Pi; math.Abs(top-next) < angle {
-			angle = math.Abs(top - next)
-		}
+		angle = min(math.Abs(bottom-turn), math.Abs(top-turn), math.Abs(top-turn-2*math.Pi))
 	}
-	cos := math.Cos(math.Min(angle, math.Pi))
-	g := math.Min(math.Max(cos, math.Exp(low)), math.Exp(high))
-	return math.Sqrt(math.Max(0, (g-cos)*(g-cos)+1-cos*cos))
+	sin, cos := math.Sincos(min(angle, math.Pi))
+	least := k.least * negligible
+	if cos > 0 && sin >= least {
+		return true
+	}
+	g := min(max(cos, math.Exp(low)), math.Exp(high))
+	return (g-cos)*(g-cos)+sin*sin >= least*least
 }
 
 // crossover closes in on |T| = 1 between two nodes and keeps it.

@@ -56,11 +56,8 @@ type reference struct {
 	modulus           float64
 }
 
-func search(t *transfer.Product, ff float64, points int) reference {
-	low, high := math.Log(twoPi*1e-6*ff), math.Log(twoPi*10*ff)
-	if t.Sampled != nil {
-		high = math.Log(math.Pi / t.Sampled.Period)
-	}
+// grid is evenly spaced in ln ω and denser around every root: steps of a tenth of its half-width over 30 half-widths.
+func grid(t *transfer.Product, low, high float64, points int) []float64 {
 	var us []float64
 	for i := range points {
 		us = append(us, low+(high-low)*float64(i)/float64(points-1))
@@ -74,6 +71,15 @@ func search(t *transfer.Product, ff float64, points int) reference {
 		}
 	}
 	sort.Float64s(us)
+	return us
+}
+
+func search(t *transfer.Product, ff float64, points int) reference {
+	low, high := math.Log(twoPi*1e-6*ff), math.Log(twoPi*10*ff)
+	if t.Sampled != nil {
+		high = math.Log(math.Pi / t.Sampled.Period)
+	}
+	us := grid(t, low, high, points)
 	magnitude := func(u float64) float64 { return math.Log(cmplx.Abs(t.At(math.Exp(u)))) }
 	angle := func(u float64) float64 { return cmplx.Phase(-t.At(math.Exp(u))) }
 	bisect := func(f func(float64) float64, a, b float64) float64 {

@@ -51,6 +51,7 @@ type walker struct {
 	aboveAt    float64
 	least      float64 // least |1 + T| known
 	leastAt    float64
+	room       [2]float64 // ln|T| must come between these for |1 + T| to be less
 }
 
 // walk collects everything that the figures are made of.
@@ -58,6 +59,7 @@ func (k *walker) walk() error {
 	k.slopes, k.free, k.stack = k.slopes[:0], k.free[:0], k.stack[:0]
 	k.visits, k.unbounded = 0, false
 	k.margin, k.below, k.above, k.least = math.Inf(1), math.Inf(-1), math.Inf(1), math.Inf(1)
+	k.room = [2]float64{math.Inf(-1), math.Inf(1)}
 	k.marginAt, k.belowAt, k.aboveAt, k.leastAt = math.NaN(), math.NaN(), math.NaN(), math.NaN()
 	k.start()
 	left := k.pop()
@@ -72,7 +74,7 @@ func (k *walker) walk() error {
 			if k.visits++; k.visits > steps {
 				return ErrTooInvolved
 			}
-			k.push((left.u + right.u) / 2)
+			k.push((left.u+right.u)/2, math.Sqrt(left.w)*math.Sqrt(right.w))
 			continue
 		}
 		k.free = append(k.free, left.slot)
@@ -125,16 +127,13 @@ func (k *walker) start() {
 		if marks[i] > k.limit || len(k.stack) > 0 && marks[i] >= k.stack[len(k.stack)-1].w {
 			continue
 		}
-		k.push(math.Log(marks[i]))
-		if marks[i] == k.first || marks[i] == k.last {
-			k.stack[len(k.stack)-1].w = marks[i]
-		}
+		k.push(math.Log(marks[i]), marks[i])
 	}
 }
 
-// push evaluates T at e^u and puts the node on the stack.
-func (k *walker) push(u float64) {
-	n := node{u: u, w: math.Exp(u)}
+// push evaluates T at w = e^u and puts the node on the stack.
+func (k *walker) push(u, w float64) {
+	n := node{u: u, w: w}
 	if len(k.free) == 0 {
 		k.free = append(k.free, len(k.slopes)/max(len(k.sections), 1))
 		for range max(len(k.sections), 1) {
@@ -168,11 +167,12 @@ func polar(t complex128) (g, theta float64) {
 
 // consider keeps the least |1 + T| inside the range.
 func (k *walker) consider(w float64, t complex128) {
-	if w < k.first*(1-1e-12) || w > k.last*(1+1e-12) {
+	if re, im := 1+real(t), imag(t); re*re+im*im >= k.least*k.least || w < k.first*(1-1e-12) || w > k.last*(1+1e-12) {
 		return
 	}
 	if d := math.Hypot(1+real(t), imag(t)); d < k.least {
 		k.least, k.leastAt = d, w
+		k.room = [2]float64{math.Log1p(-min(d, 1)), math.Log1p(d)}
 	}
 }
 
@@ -224,11 +224,11 @@ func (k *walker) ranges(a, b *node) (least, greatest slope) {
 
 // envelope gives the range of a function over [0, width] from its values at the ends and the range of its slope.
 func envelope(a, b, width, least, greatest float64) (low, high float64) {
-	low, high = math.Min(a, b), math.Max(a, b)
+	low, high = min(a, b), max(a, b)
 	if least < 0 && greatest > 0 {
 		rise := (b - a - least*width) / (greatest - least) // how long it may rise first and still reach b
-		high = math.Max(high, a+greatest*rise)
-		low = math.Min(low, a+least*(width-rise))
+		high = max(high, a+greatest*rise)
+		low = min(low, a+least*(width-rise))
 	}
 	return low, high
 }
