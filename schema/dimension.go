@@ -94,28 +94,28 @@ func dimensionNamed(name string) (Dimension, bool) {
 	return 0, false
 }
 
-// prefixFactor is the factor of an SI prefix (SI brochure, 9th edition, 2019, table 7). Micro may also be written u or
-// U+03BC, kilo also K: neither means anything else here. The empty prefix is 1.
-func prefixFactor(prefix string) (float64, bool) {
+// prefixPower is the power of ten of an SI prefix (SI brochure, 9th edition, 2019, table 7). Micro may also be written u or
+// U+03BC, kilo also K: neither means anything else here. The empty prefix is 10⁰.
+func prefixPower(prefix string) (int, bool) {
 	switch prefix {
 	case "":
-		return 1, true
+		return 0, true
 	case "p":
-		return 1e-12, true
+		return -12, true
 	case "n":
-		return 1e-9, true
+		return -9, true
 	case "u", "\u00b5", "\u03bc":
-		return 1e-6, true
+		return -6, true
 	case "m":
-		return 1e-3, true
+		return -3, true
 	case "k", "K":
-		return 1e3, true
+		return 3, true
 	case "M":
-		return 1e6, true
+		return 6, true
 	case "G":
-		return 1e9, true
+		return 9, true
 	case "T":
-		return 1e12, true
+		return 12, true
 	}
 	return 0, false
 }

@@ -43,7 +43,22 @@ func LookupField(k Kind, pointer string) (FieldInfo, bool) {
 		return len(g.Examples) > 0
 	})
 	info.Required = requiredAt(k, pointer)
+	if info.Dimension == 0 {
+		info.inherit(k)
+	}
 	return info, true
+}
+
+// inherit gives the ends of a range, and the value of a long form, the dimension of the quantity that they belong to.
+func (i *FieldInfo) inherit(k Kind) {
+	cut := strings.LastIndexByte(i.Pointer, '/')
+	if cut < 0 || i.Pointer[cut:] == "/tolerance" {
+		return
+	}
+	if q, ok := fieldOf(k).at(i.Pointer[:cut]).quantity(); ok && i.Pointer[cut:] != "/frequency" && i.Pointer[cut:] != "/quality" {
+		i.Dimension = q.dim
+		i.Examples = []string{q.dim.facts().typed}
+	}
 }
 
 // requiredAt tells whether the mapping above the pointer always needs its key.

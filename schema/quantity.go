@@ -87,9 +87,18 @@ func parseQuantity(text string, dim Dimension) (Quantity, *fault) {
 
 // spreadBy is q with its extremes at nominal·(1 − minus) and nominal·(1 + plus), whatever the sign of the nominal.
 func (q Quantity) spreadBy(minus, plus float64) Quantity {
-	low, high := q.Nominal*(1-minus), q.Nominal*(1+plus)
-	q.Min, q.Max, q.Spread = math.Min(low, high), math.Max(low, high), true
+	low, high := round15(q.Nominal*(1-minus)), round15(q.Nominal*(1+plus))
+	q.Min, q.Max, q.Spread = min(low, high, q.Nominal), max(low, high, q.Nominal), true
 	return q
+}
+
+// round15 takes the last bit's noise off a product of decimal numbers: 22 µH + 20 % is 26.4 µH.
+func round15(v float64) float64 {
+	rounded, err := strconv.ParseFloat(strconv.FormatFloat(v, 'g', 15, 64), 64)
+	if err != nil {
+		return v
+	}
+	return rounded
 }
 
 func checkFinite(q Quantity, text string, dim Dimension) (Quantity, *fault) {
@@ -125,32 +134,30 @@ func blank(r rune) bool {
 func scanValue(s string, dim Dimension) (value float64, rest string, f *fault) {
 	sign, body := cutSign(s)
 	digits, tail := cutNumber(body)
-	if mantissa, factor, behind, ok := letterCode(digits, tail, dim); ok {
-		return letterValue(s, sign, mantissa, factor, behind, dim)
+	if mantissa, power, behind, ok := letterCode(digits, tail, dim); ok {
+		return letterValue(s, sign, mantissa, power, behind, dim)
 	}
 	if digits == "" {
 		return 0, "", expected(dim, s, misreading(s, dim))
 	}
-	number, _ := strconv.ParseFloat(digits, 64) // out of range gives ±Inf, which checkFinite reports
 	if after, ok := strings.CutPrefix(strings.TrimLeftFunc(tail, blank), "/"); ok && (dim == Ratio || dim == Gain) {
-		return fraction(s, sign*number, after, dim)
+		return fraction(s, scaled{}.apply(sign, digits), after, dim)
 	}
 	unit, rest := cutUnit(strings.TrimLeftFunc(tail, blank))
 	scale, ok := findUnit(unit, dim)
 	if !ok {
 		return 0, "", wrongUnit(s, digits, unit, dim)
 	}
-	return scale.apply(sign * number), rest, nil
+	return scale.apply(sign, digits), rest, nil
 }
 
 // letterValue is the value of a letter code, behind which only the plain unit may be repeated ("4u7F").
-func letterValue(s string, sign float64, mantissa string, factor float64, behind string, dim Dimension) (float64, string, *fault) {
+func letterValue(s string, sign float64, mantissa string, power int, behind string, dim Dimension) (float64, string, *fault) {
 	unit, rest := cutUnit(strings.TrimLeftFunc(behind, blank))
 	if unit != "" && !plainUnit(unit, dim) {
 		return 0, "", expected(dim, s, afterCode(unit, mantissa))
 	}
-	number, _ := strconv.ParseFloat(mantissa, 64)
-	return sign * number * factor, rest, nil
+	return scaled{power: power}.apply(sign, mantissa), rest, nil
 }
 
 // plainUnit tells whether unit is one of the dimension's units without a prefix.
@@ -224,7 +231,7 @@ func cutUnit(s string) (unit, rest string) {
 
 // letterCode reads the code of IEC 60062 with the letter in place of the decimal point: "4k7", "0R022", "p47". The letter
 // is an SI prefix or, meaning 1, the unit's own (R for ohms, F for farads); L is milli for ohms.
-func letterCode(digits, tail string, dim Dimension) (mantissa string, factor float64, rest string, ok bool) {
+func letterCode(digits, tail string, dim Dimension) (mantissa string, power int, rest string, ok bool) {
 	if !suppliesUnit(dim) || strings.ContainsAny(digits, ".eE") || tail == "" {
 		return "", 0, "", false
 	}
@@ -234,22 +241,22 @@ func letterCode(digits, tail string, dim Dimension) (mantissa string, factor flo
 	if end == 0 {
 		return "", 0, "", false
 	}
-	factor, ok = codeLetter(letter, dim)
+	power, ok = codeLetter(letter, dim)
 	if digits == "" {
 		digits = "0"
 	}
-	return digits + "." + after[:end], factor, after[end:], ok
+	return digits + "." + after[:end], power, after[end:], ok
 }
 
-func codeLetter(letter string, dim Dimension) (float64, bool) {
+func codeLetter(letter string, dim Dimension) (int, bool) {
 	ohms := dim == Resistance || dim == Transresistance
 	switch {
 	case letter == "R":
-		return 1, ohms
+		return 0, ohms
 	case letter == "L":
-		return 1e-3, ohms
+		return -3, ohms
 	case letter == "F":
-		return 1, dim == Capacitance
+		return 0, dim == Capacitance
 	}
-	return prefixFactor(letter)
+	return prefixPower(letter)
 }

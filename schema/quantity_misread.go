@@ -62,7 +62,7 @@ func separators(s string, dim Dimension) string {
 func codeHint(digits, unit string, dim Dimension) string {
 	letter := unit[:1]
 	if lower := strings.ToLower(letter); lower != letter {
-		if _, ok := prefixFactor(lower); ok {
+		if _, ok := prefixPower(lower); ok {
 			return fmt.Sprintf("did you mean '%s%s%s'?", digits, lower, unit[1:])
 		}
 	}
@@ -74,7 +74,7 @@ func codeHint(digits, unit string, dim Dimension) string {
 
 // suppliesNothing tells a lone prefix in a field that has no prefixed unit.
 func suppliesNothing(unit string, dim Dimension) bool {
-	_, prefix := prefixFactor(unit)
+	_, prefix := prefixPower(unit)
 	return prefix && !suppliesUnit(dim)
 }
 

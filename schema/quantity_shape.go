@@ -233,7 +233,7 @@ func (f quantityField) span(ends map[string]float64) Quantity {
 	case math.IsInf(q.Max, 0):
 		q.Nominal = q.Min
 	default:
-		q.Nominal = q.Min + (q.Max-q.Min)/2
+		q.Nominal = min(max(round15(q.Min+(q.Max-q.Min)/2), q.Min), q.Max)
 		q.AssumedNominal = !f.window
 	}
 	return q

@@ -2,29 +2,41 @@ package schema
 
 import (
 	"math"
+	"strconv"
 	"strings"
 	"unicode/utf8"
 )
 
-// scaled is what a unit makes of the number before it: number·10^0 × factor, or 10^(number/20) for decibels of a ratio.
+// scaled is what a unit makes of the number before it: number·10^power, or 10^(number/20) for decibels of a ratio.
 type scaled struct {
-	factor float64
-	power  bool // decibels of a plain ratio
+	power    int
+	decibels bool
 }
 
-// apply turns the written number into the SI value.
-func (s scaled) apply(number float64) float64 {
-	if s.power {
-		return math.Pow(10, number/20)
+// apply turns the written number into the SI value. The power of ten goes into the number's own exponent, so that
+// "220 uF" is the float nearest to 0.00022. A number out of range gives ±Inf.
+func (s scaled) apply(sign float64, digits string) float64 {
+	mantissa, exponent, _ := strings.Cut(strings.ToLower(digits), "e")
+	power, err := strconv.Atoi(exponent)
+	switch {
+	case exponent == "":
+	case err != nil && exponent[0] == '-', power < -1000:
+		power = -1000
+	case err != nil, power > 1000:
+		power = 1000
 	}
-	return number * s.factor
+	number, _ := strconv.ParseFloat(mantissa+"e"+strconv.Itoa(power+s.power), 64)
+	if s.decibels {
+		return math.Pow(10, sign*number/20)
+	}
+	return sign * number
 }
 
 // findUnit reads a unit in the dimension: a prefix with a unit ("mΩ"), a unit ("dB"), a prefix alone ("k", the field
 // supplies the unit) or nothing.
 func findUnit(unit string, dim Dimension) (scaled, bool) {
 	if unit == "" {
-		return scaled{factor: 1}, true
+		return scaled{}, true
 	}
 	f := dim.facts()
 	for _, exact := range f.exact {
@@ -32,12 +44,12 @@ func findUnit(unit string, dim Dimension) (scaled, bool) {
 			return exactUnit(unit, dim), true
 		}
 	}
-	if factor, ok := prefixFactor(unit); ok && suppliesUnit(dim) {
-		return scaled{factor: factor}, true
+	if power, ok := prefixPower(unit); ok && suppliesUnit(dim) {
+		return scaled{power: power}, true
 	}
 	for _, base := range f.bases {
-		if factor, ok := prefixed(unit, base); ok {
-			return scaled{factor: factor}, true
+		if power, ok := prefixed(unit, base); ok {
+			return scaled{power: power}, true
 		}
 	}
 	return scaled{}, false
@@ -47,11 +59,11 @@ func findUnit(unit string, dim Dimension) (scaled, bool) {
 func exactUnit(unit string, dim Dimension) scaled {
 	switch {
 	case unit == "%":
-		return scaled{factor: 0.01}
+		return scaled{power: -2}
 	case unit == "dB" && dim == Gain:
-		return scaled{power: true}
+		return scaled{decibels: true}
 	}
-	return scaled{factor: 1}
+	return scaled{}
 }
 
 // suppliesUnit tells whether a prefix may stand alone in a field of the dimension, as in "100n".
@@ -64,14 +76,14 @@ func suppliesUnit(dim Dimension) bool {
 }
 
 // prefixed reads unit as prefix + base; of a quotient ("V/s") both sides may have a prefix.
-func prefixed(unit, base string) (float64, bool) {
+func prefixed(unit, base string) (int, bool) {
 	over, under, quotient := strings.Cut(base, "/")
 	if !quotient {
 		head, ok := strings.CutSuffix(unit, base)
 		if !ok {
 			return 0, false
 		}
-		return prefixFactor(head)
+		return prefixPower(head)
 	}
 	above, below, ok := strings.Cut(unit, "/")
 	if !ok {
@@ -82,7 +94,7 @@ func prefixed(unit, base string) (float64, bool) {
 	if !aok || !bok {
 		return 0, false
 	}
-	return a / b, true
+	return a - b, true
 }
 
 // knownUnit tells whether any dimension has the unit.

@@ -68,8 +68,10 @@ func expectations(t testing.TB, text string) []expectation {
 func TestMarkedFilesHaveExactlyTheProblemsOfTheirMarks(t *testing.T) {
 	files, err := filepath.Glob("testdata/validate/*.yaml")
 	require.NoError(t, err)
+	policies, err := filepath.Glob("testdata/validate/*/halfplane.yaml")
+	require.NoError(t, err)
 	require.NotEmpty(t, files)
-	for _, path := range files {
+	for _, path := range append(files, policies...) {
 		t.Run(filepath.Base(path), func(t *testing.T) {
 			doc := readFile(t, path)
 			spec, problems := Validate(doc, folder{"testdata/validate"})

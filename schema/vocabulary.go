@@ -113,8 +113,8 @@ func (ascending) Validate(ctx jsonschema.ValidationContext, v any) error {
 	return nil
 }
 
-// compile builds the validator of one kind.
-func compile(k Kind) *jsonschema.Schema {
+// newCompiler knows the schema of one kind, the shared definitions and the vocabulary.
+func newCompiler(k Kind) *jsonschema.Compiler {
 	c := jsonschema.NewCompiler()
 	c.AssertFormat = true
 	meta, err := jsonschema.CompileString("urn:halfplane:schema:vocabulary", vocabularyMeta)
@@ -127,7 +127,12 @@ func compile(k Kind) *jsonschema.Schema {
 			panic(fmt.Sprintf("reading the embedded schema %s: %v", name, err)) // a test compiles them all
 		}
 	}
-	compiled, err := c.Compile(schemaID(k))
+	return c
+}
+
+// compile builds the validator of one kind.
+func compile(k Kind) *jsonschema.Schema {
+	compiled, err := newCompiler(k).Compile(schemaID(k))
 	if err != nil {
 		panic(fmt.Sprintf("compiling the embedded schema %s: %v", k, err)) // a test compiles them all
 	}

@@ -43,7 +43,7 @@ func wrongName(s *site, found string) string {
 func wrongLength(s *site) string {
 	switch {
 	case s.above != nil && s.above.step == "bias-derating":
-		return fmt.Sprintf("%s expects a pair [voltage, factor], found %d values", s.name(), len(s.node.Items))
+		return fmt.Sprintf("%s expects a pair [voltage, factor], found a list of %d", s.name(), len(s.node.Items))
 	case len(s.node.Items) == 0:
 		return fmt.Sprintf("%s is empty, at least one item is expected", s.name())
 	}
