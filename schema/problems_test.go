@@ -25,6 +25,7 @@ func TestSyntaxProblemsAreSaidAtTheirPlaceInADesignersWords(t *testing.T) {
 		want       []string
 	}{
 		{"nothing wrong", "title: Pier 7, east 🌊\nratio: 1/4\n", nil},
+		{"JSON indented with tabs", "{\n\t\"a\": 1,\n\t\"b\": [\n\t\t2\n\t]\n}\n", nil},
 		{"empty", "", []string{"1:1-1:1 : the file is empty"}},
 		{"comment only", "\ufeff# gauge µ\n\n", []string{"1:1-1:1 : the file is empty"}},
 		{"list at the top", "- a\n- b\n", []string{"1:1-2:4 : a spec file holds keys with values at its top level, and this is a single list"}},
@@ -111,6 +112,7 @@ func TestEveryDuplicateKeyIsReportedWithItsFirstPlace(t *testing.T) {
 			assert.Len(t, p.Related, 1)
 			assert.Equal(t, c.first, p.Related[0].Start)
 			assert.Equal(t, "first given here", p.Related[0].Message)
+			assert.Equal(t, p.Pointer, p.Related[0].Pointer)
 		}
 	}
 	assert.Equal(t, "1", Read("d.converter.yaml", []byte("a: 1\na: 2\n"), 0).Find("/a").Value, "the first counts")

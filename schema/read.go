@@ -64,6 +64,9 @@ func (t *tree) finish() []Problem {
 		p := &t.problems[i]
 		at, _ := t.doc.PointerAt(p.Start)
 		p.Pointer = at + p.Pointer // a dropped duplicate brings its own last step
+		for j := range p.Related {
+			p.Related[j].Pointer, _ = t.doc.PointerAt(p.Related[j].Start)
+		}
 	}
 	return t.problems
 }

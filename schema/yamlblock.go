@@ -270,11 +270,15 @@ func (r *yamlReader) plainKey(p *yamlProperties, block bool) yamlKey {
 	}
 	r.canBegin(block)
 	end := r.plainLine(start, !block)
-	n := r.node(Scalar, start, end)
-	n.Type, n.Value = Text, r.src[start:end]
 	r.pos = end
-	r.apply(p, n)
-	return yamlKey{text: n.Value, start: start, end: end, plain: true}
+	k := yamlKey{text: r.src[start:end], start: start, end: end, plain: true}
+	if p.anchor != nil || p.tag != "" { // only then is the key a value of its own
+		n := r.node(Scalar, start, end)
+		n.Value = k.text
+		resolveCore(n)
+		r.apply(p, n)
+	}
+	return k
 }
 
 // misplaced reports the first word of a line that does not stand where it should; a line that a tab indents was
