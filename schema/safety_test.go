@@ -10,8 +10,8 @@ import (
 	"github.com/stretchr/testify/require"
 )
 
-// TestHostileTextsAreRefusedAtOnce: each text is built to make a reader hang, recurse without end or fill the memory. The
-// limit of a second is a hundred times what any of them takes.
+// TestHostileTextsAreRefusedAtOnce: each text is built to make a reader hang, recurse without end or fill the memory. Each
+// takes a small part of a second; the limit leaves room for a loaded machine and the race detector.
 func TestHostileTextsAreRefusedAtOnce(t *testing.T) {
 	const mega = 1 << 20
 	bomb := "a0: &a0 [x, x, x, x, x, x, x, x, x, x]\n"
@@ -53,7 +53,7 @@ func TestHostileTextsAreRefusedAtOnce(t *testing.T) {
 		t.Run(c.name, func(t *testing.T) {
 			begin := time.Now()
 			d := Read(c.file, []byte(c.text), 0)
-			assert.Less(t, time.Since(begin), time.Second)
+			assert.Less(t, time.Since(begin), 10*time.Second)
 			require.NotEmpty(t, d.Problems)
 			assert.LessOrEqual(t, len(d.Problems), problemLimit)
 			assert.Contains(t, strings.Join(said(d), "\n"), c.says)
@@ -76,7 +76,7 @@ func TestLargeFilesWithinTheLimitAreRead(t *testing.T) {
 	} {
 		begin := time.Now()
 		d := Read("x.converter.yaml", []byte(text), 0)
-		assert.Less(t, time.Since(begin), 2*time.Second, name)
+		assert.Less(t, time.Since(begin), 10*time.Second, name)
 		assert.Empty(t, d.Problems, name)
 	}
 }
