@@ -205,17 +205,19 @@ func cornerOf(c *analysis.Corner) cornerOut {
 	if out.Ideal != nil {
 		out.DutyPeak = pointer(c.DutyPeak)
 	}
+	p := &c.Plant
+	if p.StageInductance > 0 { // known also where no duty reaches the output voltage
+		out.Stage = stageOut{figure(p.StageInductance), figure(p.StageCapacitance), figure(p.StageESR)}
+	}
 	if !c.Reached {
 		return out
 	}
-	p := &c.Plant
 	mode := p.Mode.String()
 	out.Mode = &mode
 	out.Duty, out.InductorCurrent, out.InductorRipple = figure(p.Duty), figure(p.InductorCurrent), figure(p.InductorRipple)
 	if !math.IsNaN(p.SecondCurrent) {
 		out.SecondCurrent, out.SecondRipple = pointer(p.SecondCurrent), pointer(p.SecondRipple)
 	}
-	out.Stage = stageOut{figure(p.StageInductance), figure(p.StageCapacitance), figure(p.StageESR)}
 	if i := p.Current; i != nil {
 		out.CurrentLoop = &currentLoopOut{figure(i.OnSlope), figure(i.ExternalSlope), figure(i.SlopeRatio), figure(i.HalfFrequencyQuality)}
 	}
@@ -254,7 +256,7 @@ func loopOf(l *loop.Figures) *loopOut {
 
 // idealOf is nil for a corner whose closed forms were not computed.
 func idealOf(i plant.Ideal) *idealOut {
-	if i == (plant.Ideal{}) {
+	if i == (plant.Ideal{}) || math.IsNaN(i.Duty+i.ESRZero) && math.IsNaN(i.ControlGain) {
 		return nil
 	}
 	return &idealOut{figure(i.Duty), figure(i.ControlGain), figure(i.LineGain), figure(i.Resonance), figure(i.Quality), figure(i.ESRZero), figure(i.RHPZero)}

@@ -5,6 +5,7 @@ import (
 	"io"
 	"math"
 	"strings"
+	"unicode/utf8"
 
 	"halfplane/analysis"
 	"halfplane/rules"
@@ -198,6 +199,9 @@ func cells(c *analysis.Corner) []string {
 	if l := c.Loop; l != nil {
 		put(8, l.Crossover, "Hz")
 		put(9, l.PhaseMargin, "deg")
+		if math.IsNaN(l.PhaseMargin) && !l.Stable {
+			out[9] = "unstable"
+		}
 		put(11, l.GainMargin, "dB")
 		put(12, l.ModulusMargin, "")
 	}
@@ -206,6 +210,9 @@ func cells(c *analysis.Corner) []string {
 	}
 	return out
 }
+
+// cornerWidth is the width to which the words of a corner are wrapped: with the columns before it about 120 characters.
+const cornerWidth = 86
 
 // worst lists the worst figures, each with the corner that it was found at.
 func (p *figurePage) worst() error {
@@ -219,7 +226,13 @@ func (p *figurePage) worst() error {
 			t.row(label, "–", "")
 			return
 		}
-		t.row(label, schema.Format(of.Value, unit), "at "+p.words(p.file.Result.Corners[of.Corner].At))
+		for i, part := range atCommas("at "+p.words(p.file.Result.Corners[of.Corner].At), cornerWidth) {
+			if i == 0 {
+				t.row(label, schema.Format(of.Value, unit), part)
+			} else {
+				t.row("", "", "   "+part)
+			}
+		}
 	}
 	line("phase margin", w.PhaseMargin, "deg")
 	line("gain margin", w.GainMargin, "dB")
@@ -238,4 +251,21 @@ func (p *figurePage) worst() error {
 	}
 	fmt.Fprintf(p.w, "\n%s\n", p.bold("Worst figures ("+p.file.Result.Method+")"))
 	return t.write(p.w, "  ")
+}
+
+// atCommas breaks a list behind commas so that no part is longer than width where that is possible.
+func atCommas(list string, width int) []string {
+	var parts []string
+	for _, item := range strings.Split(list, ", ") {
+		last := len(parts) - 1
+		if last >= 0 && utf8.RuneCountInString(parts[last])+2+utf8.RuneCountInString(item) <= width {
+			parts[last] += ", " + item
+			continue
+		}
+		if last >= 0 {
+			parts[last] += ","
+		}
+		parts = append(parts, item)
+	}
+	return parts
 }

@@ -24,9 +24,9 @@ func (p *figurePage) model() error {
 		return err
 	}
 	s, i := &c.Plant, &c.Ideal
-	gain := "V"
-	if s.Current != nil {
-		gain = "" // volts per control volt
+	gain, formControl, formLine := "V", i.ControlGain, i.LineGain
+	if s.Current != nil { // volts per control volt; the closed forms are per duty
+		gain, formControl, formLine = "", math.NaN(), math.NaN()
 	}
 	t := table{left: 1}
 	t.row("", "with losses", "closed form")
@@ -36,8 +36,8 @@ func (p *figurePage) model() error {
 		unit      string
 	}{
 		{"duty", s.Duty, i.Duty, ""},
-		{"control gain", s.ControlGain, i.ControlGain, gain},
-		{"line gain", s.LineGain, i.LineGain, ""},
+		{"control gain", s.ControlGain, formControl, gain},
+		{"line gain", s.LineGain, formLine, ""},
 		{"resonance", s.Resonance, i.Resonance, "Hz"},
 		{"quality", s.Quality, i.Quality, ""},
 		{"ESR zero", s.ESRZero, i.ESRZero, "Hz"},

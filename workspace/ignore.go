@@ -47,25 +47,35 @@ func (l ignoreList) with(folder string) ignoreList {
 	return out
 }
 
-// ignoresAbove collects what the ignore files above folder say, from the git work tree's root downwards. Outside of a
-// work tree nothing above the folder counts.
+// ignoresAbove collects what the ignore files above folder say, from the git work tree's root downwards, without a work tree
+// from the working folder where folder lies below it. What lies further up is somebody else's.
 func ignoresAbove(folder string) ignoreList {
+	root := rootAbove(folder)
 	var above []string
-	for dir := folder; !exists(filepath.Join(dir, ".git")); dir = filepath.Dir(dir) {
-		if filepath.Dir(dir) == dir {
-			return nil
-		}
+	for dir := folder; dir != root; dir = filepath.Dir(dir) {
 		above = append(above, filepath.Dir(dir))
-	}
-	root := folder
-	if len(above) > 0 {
-		root = above[len(above)-1]
 	}
 	list := ignoreList(readIgnore(filepath.Join(root, ".git", "info", "exclude"), root))
 	for i := len(above) - 1; i >= 0; i-- {
 		list = list.with(above[i])
 	}
 	return list
+}
+
+// rootAbove is the folder from which ignore files count for folder.
+func rootAbove(folder string) string {
+	for dir := folder; ; dir = filepath.Dir(dir) {
+		if exists(filepath.Join(dir, ".git")) {
+			return dir
+		}
+		if filepath.Dir(dir) == dir {
+			break
+		}
+	}
+	if here := absolute("."); within(here, folder) {
+		return here
+	}
+	return folder
 }
 
 // maxIgnore bounds the size of an ignore file that is read: larger ones are no ignore files.

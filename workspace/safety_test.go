@@ -162,6 +162,38 @@ func TestFailuresInsideTheProgramStayWithTheirFile(t *testing.T) {
 	assert.NotEmpty(t, files[1].Findings)
 }
 
+// Numbers that are well written and impossible are the file's fault, not the program's.
+func TestImpossibleNumbersAreTheFilesFault(t *testing.T) {
+	sane, err := os.ReadFile("../testdata/reference/beacon-boost-type3.converter.yaml")
+	require.NoError(t, err)
+	for from, to := range map[string]string{
+		"feedback-resistor: 7k87 ± 1 %":        "feedback-resistor: 1e200",
+		"integrator-capacitor: 39n ± 5 %":      "integrator-capacitor: 1e-200",
+		"lead-capacitor: 2n7 ± 5 %":            "lead-capacitor: 1e-200",
+		"inductance: 22 uH ± 20 %":             "inductance: 1e300",
+		"capacitance: 220 uF ± 20 %":           "capacitance: 1e300",
+		"switching-frequency: 250 kHz":         "switching-frequency: 1e308",
+		"output-voltage: 24 V":                 "output-voltage: 1e300",
+		"gain-bandwidth: 10 MHz":               "gain-bandwidth: 1e-200",
+		"duty-limit: {min: 0, max: 0.8}":       "delay: 1e200",
+		"resistance: 25 mΩ":                    "resistance: 1e200",
+		"ramp-amplitude: 1.8 V":                "ramp-amplitude: 1e-300",
+		"esr: {min: 8 mΩ, max: 25 mΩ}":         "esr: 1e200",
+		"{min: 9 V, nominal: 12 V, max: 16 V}": "{min: 1e-200, nominal: 12 V, max: 1e200}",
+	} {
+		t.Run(to, func(t *testing.T) {
+			require.Contains(t, string(sane), from)
+			text := strings.Replace(string(sane), from, to, 1)
+			f := Open(".").CheckDocument(context.Background(), schema.Read("a.converter.yaml", []byte(text), 0), Options{Depth: analysis.Quick})
+			assert.False(t, f.Defect)
+			if f.Status == Unreadable {
+				require.NotEmpty(t, f.Findings)
+				assert.Equal(t, "quantity", f.Findings[0].Rule)
+			}
+		})
+	}
+}
+
 func TestManyFilesComeOutInOrder(t *testing.T) {
 	files := map[string]string{}
 	var paths []string

@@ -97,17 +97,20 @@ func TestSearchFollowsIgnoreFiles(t *testing.T) {
 	}
 }
 
-func TestIgnoreFilesAboveANamedFolderCountInsideAWorkTreeOnly(t *testing.T) {
-	files := map[string]string{".gitignore": "b.*\n", "shelf/a.converter.yaml": "", "shelf/b.converter.yaml": ""}
-	tree(t, files)
-	got, err := Search([]string{"shelf"})
+func TestIgnoreFilesAboveANamedFolderCountFromTheWorkTreeElseTheWorkingFolder(t *testing.T) {
+	files := map[string]string{".gitignore": "b.*\n", "top/shelf/a.converter.yaml": "", "top/shelf/b.converter.yaml": ""}
+	root := tree(t, files)
+	got, err := Search([]string{"top/shelf"})
 	require.NoError(t, err)
-	assert.Len(t, got, 2, "no work tree: what lies above is somebody else's")
-	files[".git/HEAD"] = ""
-	tree(t, files)
+	assert.Equal(t, []string{"top/shelf/a.converter.yaml"}, got, "below the working folder")
+	t.Chdir("top")
 	got, err = Search([]string{"shelf"})
 	require.NoError(t, err)
-	assert.Equal(t, []string{"shelf/a.converter.yaml"}, got)
+	assert.Len(t, got, 2, "what lies above the working folder is somebody else's")
+	require.NoError(t, os.MkdirAll(filepath.Join(root, ".git"), 0o777))
+	got, err = Search([]string{"shelf"})
+	require.NoError(t, err)
+	assert.Equal(t, []string{"shelf/a.converter.yaml"}, got, "but inside a work tree it is this project's")
 }
 
 func TestSearchEndsOnLoopsOfLinks(t *testing.T) {

@@ -32,10 +32,9 @@ func TestCommands(t *testing.T) {
 			return nil
 		},
 		Cmds: map[string]func(*testscript.TestScript, bool, []string){
-			"exits":   exits,
-			"symlink": symlink,
-			"large":   large,
-			"socket":  socket,
+			"exits":  exits,
+			"large":  large,
+			"socket": socket,
 		},
 	})
 }
@@ -55,11 +54,6 @@ func exits(ts *testscript.TestScript, _ bool, args []string) {
 	if got != want {
 		ts.Fatalf("exit status %d, expected %d\n%s", got, want, ts.ReadFile("stderr"))
 	}
-}
-
-// symlink makes a link that need not lead anywhere: symlink NAME TARGET.
-func symlink(ts *testscript.TestScript, _ bool, args []string) {
-	ts.Check(os.Symlink(args[1], ts.MkAbs(args[0])))
 }
 
 // large makes a file of so many megabytes: large NAME.
