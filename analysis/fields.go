@@ -90,11 +90,10 @@ func Field(p *Point, path string) *float64 {
 			continue
 		}
 		item, key, _ := strings.Cut(rest, ".")
-		index, err := strconv.Atoi(item)
-		if err != nil || index < 0 || strconv.Itoa(index) != item {
-			return nil
+		if index, ok := listIndex(item); ok {
+			return list.field(p, index, key)
 		}
-		return list.field(p, index, key)
+		return nil
 	}
 	return nil
 }
@@ -114,6 +113,12 @@ var listed = []struct {
 	{"compensator.denominator.", func(p *Point, i int, key string) *float64 { return itemField(p.Network.Denominator, i, key) }},
 }
 
+// listIndex reads a list index as the format writes it: digits without sign or leading zeros.
+func listIndex(item string) (int, bool) {
+	index, err := strconv.Atoi(item)
+	return index, err == nil && index >= 0 && strconv.Itoa(index) == item
+}
+
 func bankField(banks []plant.Bank, index int, key string) *float64 {
 	if index >= len(banks) {
 		return nil
@@ -128,7 +133,7 @@ func bankField(banks []plant.Bank, index int, key string) *float64 {
 	}
 	if rest, ok := strings.CutPrefix(key, "bias-derating."); ok {
 		item, key, _ := strings.Cut(rest, ".")
-		if point, err := strconv.Atoi(item); err == nil && point >= 0 {
+		if point, ok := listIndex(item); ok {
 			return deratingField(banks[index].Derating, point, key)
 		}
 	}

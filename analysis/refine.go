@@ -3,6 +3,7 @@ package analysis
 import (
 	"context"
 	"math"
+	"strings"
 
 	"halfplane/analysis/plant"
 	"halfplane/analysis/spread"
@@ -86,13 +87,30 @@ func (s *search) boundary(input float64, candidates [][]float64) {
 	if p.load < 0 || p.design.Nominal.Circuit.Synchronous || p.box.Min[p.load] == p.box.Max[p.load] {
 		return
 	}
+	axes := p.boundaryAxes()
 	for _, x := range candidates {
-		p.box.Vertices(x, p.store, func(x []float64) bool {
+		p.box.Vertices(x, axes, func(x []float64) bool {
 			s.kink(x)
 			s.ended = s.ctx.Err()
 			return s.ended == nil
 		})
 	}
+}
+
+// boundaryAxes gives the axes whose vertices are visited at the conduction boundary: those of what stores energy, or, where that
+// were too many, the inductances, which move the boundary.
+func (p *plan) boundaryAxes() []int {
+	const most = 5
+	if len(p.store) <= most {
+		return p.store
+	}
+	var list []int
+	for _, axis := range p.store {
+		if strings.HasSuffix(p.design.Axes[axis].Path, ".inductance") {
+			list = append(list, axis)
+		}
+	}
+	return list
 }
 
 // kink bisects the load of x between the modes and evaluates both sides.
@@ -106,7 +124,7 @@ func (s *search) kink(x []float64) {
 	}
 	light, full := p.box.Min[p.load], p.box.Max[p.load]
 	at := mode(light)
-	if at == 0 || mode(full) == at {
+	if other := mode(full); at == 0 || other == 0 || other == at { // 0: not reached
 		return
 	}
 	inside, outside := spread.Boundary(light, full, 26, func(load float64) bool { return mode(load) == at })

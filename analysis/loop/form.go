@@ -45,12 +45,12 @@ type section struct {
 // slope is a section's share of d ln T/du, for a zero.
 type slope struct{ magnitude, phase float64 }
 
-// at gives the section's value at ω, its square magnitude and its slopes.
-func (q *section) at(w float64) (f complex128, h float64, s slope) {
+// at gives the section's value at ω, the inverse of its square magnitude and its slopes.
+func (q *section) at(w float64) (f complex128, inverse float64, s slope) {
 	y, x := q.a*w*w, q.b*w
 	r := 1 - y
-	h = r*r + x*x
-	return complex(r, x), h, slope{(x*x - 2*y*r) / h, x * (1 + y) / h}
+	inverse = 1 / (r*r + x*x)
+	return complex(r, x), inverse, slope{(x*x - 2*y*r) * inverse, x * (1 + y) * inverse}
 }
 
 // realSection is the factor 1 − s/r: its magnitude slope rises from 0 to 1, its phase slope peaks with 1/2 at ω = |r|.
@@ -132,7 +132,7 @@ func appendSections(list []section, roots []complex128) ([]section, int, error) 
 
 // at gives T(jω) and d ln T/du. Each section's slopes are left in slopes where it is not nil.
 func (f *form) at(w float64, slopes []slope) (t, l complex128) {
-	num, den, h := complex128(1), complex128(1), 1.0
+	num, den, inverse := complex(f.gain, 0), complex128(1), 1.0
 	var magnitude, phase float64
 	for i := range f.sections {
 		v, v2, s := f.sections[i].at(w)
@@ -142,19 +142,16 @@ func (f *form) at(w float64, slopes []slope) (t, l complex128) {
 		if i < f.zeros {
 			num *= v
 			magnitude, phase = magnitude+s.magnitude, phase+s.phase
-			if i%8 == 7 {
-				num, den, h = fold(num, den, h)
-			}
-			continue
+		} else {
+			den *= v
+			inverse *= v2
+			magnitude, phase = magnitude-s.magnitude, phase-s.phase
 		}
-		den *= v
-		h *= v2
-		magnitude, phase = magnitude-s.magnitude, phase-s.phase
-		if i%8 == 7 {
-			num, den, h = fold(num, den, h)
+		if i%8 == 7 { // long products neither overflow nor vanish
+			num, den, inverse = num*complex(real(den)*inverse, -imag(den)*inverse), 1, 1
 		}
 	}
-	t = num * complex(real(den)*f.gain/h, -imag(den)*f.gain/h)
+	t = num * complex(real(den)*inverse, -imag(den)*inverse)
 	for range f.integrators {
 		t = complex(imag(t)/w, -real(t)/w)
 	}
@@ -173,11 +170,6 @@ func (f *form) at(w float64, slopes []slope) (t, l complex128) {
 		t, l = t*v, l+s
 	}
 	return t, l
-}
-
-// fold divides the products so far, so that long ones neither overflow nor vanish.
-func fold(num, den complex128, h float64) (complex128, complex128, float64) {
-	return num * complex(real(den)/h, -imag(den)/h), 1, 1
 }
 
 // dcGain is |T(0)|.

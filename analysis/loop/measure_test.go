@@ -204,7 +204,7 @@ func TestFindsWhatADenseSearchFinds(t *testing.T) {
 	r := rand.New(rand.NewPCG(11, 12))
 	var out Figures
 	var meter Meter
-	loops, near, total, most := 60, 0, 0, 0
+	loops, near, total, most := 40, 0, 0, 0
 	if testing.Short() {
 		loops = 15
 	}
