@@ -84,6 +84,9 @@ func (m *square) eigenvalues(n int) ([]complex128, error) {
 // solveComplex overwrites the right-hand sides b with (s·I − A)⁻¹ b for the leading n×n part of A, by elimination with relative
 // pivots. ok is false at an eigenvalue.
 func (m *square) solveComplex(n int, s complex128, b ...*[maxOrder]complex128) (ok bool) {
+	if n == 2 {
+		return m.solvePair(s, b)
+	}
 	var a [maxOrder][maxOrder]complex128
 	var size [maxOrder]float64
 	for i := range n {
@@ -132,6 +135,20 @@ func (m *square) solveComplex(n int, s complex128, b ...*[maxOrder]complex128) (
 			}
 			x[i] /= a[i][i]
 		}
+	}
+	return true
+}
+
+// solvePair is solveComplex for two states, by determinants: the commonest stage, asked at hundreds of frequencies.
+func (m *square) solvePair(s complex128, b []*[maxOrder]complex128) (ok bool) {
+	p, q := s-complex(m[0][0], 0), s-complex(m[1][1], 0)
+	r, t := complex(m[0][1], 0), complex(m[1][0], 0)
+	det := p*q - r*t
+	if det == 0 {
+		return false
+	}
+	for _, x := range b {
+		x[0], x[1] = (q*x[0]+r*x[1])/det, (t*x[0]+p*x[1])/det
 	}
 	return true
 }

@@ -24,6 +24,12 @@ type filterStudy struct {
 
 // filterRatios fills Input in continuous conduction.
 func (s *Stage) filterRatios(c *Circuit, x *steady, out *Solution) error {
+	f := s.filterStudy(c, x, out)
+	return f.fill(out)
+}
+
+// filterStudy prepares the study of a stage in continuous conduction.
+func (s *Stage) filterStudy(c *Circuit, x *steady, out *Solution) filterStudy {
 	bare := *s
 	bare.HasFilter, bare.Input = false, x.terminal
 	f := filterStudy{stage: s, m: bare.average(x)}
@@ -32,7 +38,8 @@ func (s *Stage) filterRatios(c *Circuit, x *steady, out *Solution) error {
 	} else if c.Modulator.FeedForward {
 		f.ahead = x.duty / x.terminal
 	}
-	return f.fill(out)
+	f.a = f.m.states()
+	return f
 }
 
 // filterRatiosOfPulse fills Input in discontinuous conduction.
@@ -79,6 +86,12 @@ func (f *filterStudy) fill(out *Solution) error {
 
 // ratios returns |Zo/ZN| and |Zo/ZD| at a frequency (rad/s).
 func (f *filterStudy) ratios(w float64) (overNull, overDriven float64) {
+	n, d := f.quotients(w)
+	return cmplx.Abs(n), cmplx.Abs(d)
+}
+
+// quotients returns Zo/ZN and Zo/ZD at a frequency (rad/s).
+func (f *filterStudy) quotients(w float64) (overNull, overDriven complex128) {
 	s := complex(0, w)
 	m := f.m
 	var byInput, byDuty [maxOrder]complex128
@@ -86,7 +99,7 @@ func (f *filterStudy) ratios(w float64) (overNull, overDriven float64) {
 		byInput[i], byDuty[i] = complex(m.a[i][colInput], 0), complex(m.duty[i], 0)
 	}
 	if !f.a.solveComplex(m.order, s, &byInput, &byDuty) {
-		return math.NaN(), math.NaN()
+		return cmplx.NaN(), cmplx.NaN()
 	}
 	answer := func(o *output) (g, d complex128) {
 		g, d = complex(o.row[colInput], 0), complex(o.duty, 0)
@@ -112,7 +125,7 @@ func (f *filterStudy) ratios(w float64) (overNull, overDriven float64) {
 		duty = (rise*riseG + fall*fallG - sense*nowG) / (complex(1/f.law.gain, 0) + sense*nowD - rise*riseD - fall*fallD)
 	}
 	z := f.stage.filterImpedance(s)
-	return cmplx.Abs(z * (drawnG - drawnD*outG/outD)), cmplx.Abs(z * (drawnG + drawnD*duty))
+	return z * (drawnG - drawnD*outG/outD), z * (drawnG + drawnD*duty)
 }
 
 // filterImpedance is Zo, Ω: what the converter sees of its input filter.
@@ -163,7 +176,7 @@ func (f *filterStudy) grid(own []complex128) ([]float64, error) {
 	for _, p := range roots {
 		low = min(low, cmplx.Abs(p))
 	}
-	const spread = 72
+	const spread = 48
 	w := make([]float64, 0, 256)
 	low = max(low/100, top*1e-12)
 	for i := range spread {
@@ -201,7 +214,7 @@ func highest(grid, values []float64, f func(float64) float64) float64 {
 	ratio := (math.Sqrt(5) - 1) / 2
 	x, y := b-ratio*(b-a), a+ratio*(b-a)
 	fx, fy := f(math.Exp(x)), f(math.Exp(y))
-	for b-a > 1e-7 {
+	for range 20 { // narrows the bracket by 1.5e4, a smooth maximum's height by its square
 		best = max(best, fx, fy)
 		if fx > fy {
 			b, y, fy = y, x, fx

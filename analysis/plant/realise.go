@@ -75,12 +75,34 @@ func (k *channel) zeros() ([]complex128, error) {
 		}
 		return 0
 	})
-	zeros := sigma[:finite]
+	zeros := wholePairs(sigma, finite)
 	for i, z := range zeros {
 		m2 := cmplx.Abs(z)
 		zeros[i] = complex(real(z)/m2/m2, -imag(z)/m2/m2)
 	}
 	return zeros, nil
+}
+
+// wholePairs returns the first count of the roots, in falling magnitude, without tearing a conjugate pair: where the cut would, the pair is
+// rounding noise around zeros at infinity, and the next real root takes its place where there is one.
+func wholePairs(sigma []complex128, count int) []complex128 {
+	for i := 0; i < count; i++ {
+		if imag(sigma[i]) == 0 {
+			continue
+		}
+		if i+1 < count {
+			i++
+			continue
+		}
+		for _, z := range sigma[count:] {
+			if imag(z) == 0 && z != 0 {
+				sigma[i] = z
+				return sigma[:count]
+			}
+		}
+		return sigma[:i]
+	}
+	return sigma[:count]
 }
 
 // relativeDegree is the number of zeros at infinity: the index of the first of e, cb, cAb, cA²b, … that is not zero.

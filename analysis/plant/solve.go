@@ -95,8 +95,18 @@ func modulatorGain(m *Modulator, input float64) float64 {
 // finishControl derives what follows from the control function and refuses a model that is not finite.
 func finishControl(out *Solution) error {
 	out.ControlGain = math.Abs(out.Control.Gain)
-	if !(out.ControlGain > 0 && out.ControlGain <= math.MaxFloat64) {
+	for _, v := range [...]float64{out.ControlGain, out.ModulatorGain} {
+		if !(v > 0 && v <= math.MaxFloat64) {
+			return errSingular
+		}
+	}
+	if sum := out.InductorCurrent + math.Abs(out.InductorRipple) + out.StageCapacitance; math.IsInf(sum, 0) || math.IsNaN(sum) {
 		return errSingular
+	}
+	for _, v := range [...]*float64{&out.LineGain, &out.Resonance, &out.Quality, &out.ESRZero, &out.OutputResistance} {
+		if math.IsInf(*v, 0) {
+			*v = math.NaN()
+		}
 	}
 	for _, p := range out.Control.Poles {
 		if m := math.Hypot(real(p), imag(p)); !(m > 0 && m <= math.MaxFloat64) {
