@@ -22,15 +22,15 @@ func (w *Workspace) Resolve(from *schema.Document, reference string) (*schema.Do
 // locate is the path part of Resolve: the absolute path that a reference in the file at the absolute path from leads to.
 func (w *Workspace) locate(from, reference string) (string, error) {
 	if strings.TrimSpace(reference) == "" || strings.ContainsRune(reference, 0) {
-		return "", fmt.Errorf("this names no file, expected a path relative to this file")
+		return "", fmt.Errorf("it names no file, expected a path relative to this file")
 	}
 	local := filepath.FromSlash(reference)
 	if filepath.IsAbs(local) || filepath.VolumeName(local) != "" {
-		return "", fmt.Errorf("this is an absolute path, expected one relative to this file")
+		return "", fmt.Errorf("it is an absolute path, expected one relative to this file")
 	}
 	abs := filepath.Join(filepath.Dir(from), local)
 	if !within(w.root, abs) && !within(w.real, abs) {
-		return "", fmt.Errorf("this leaves the workspace %s, expected a file inside it", filepath.ToSlash(w.root))
+		return "", fmt.Errorf("it leaves the workspace %s, expected a file inside it", filepath.ToSlash(w.root))
 	}
 	if real, err := filepath.EvalSymlinks(abs); err == nil && !within(w.real, real) {
 		return "", fmt.Errorf("a link leads out of the workspace %s to %s, expected a file inside it",

@@ -36,14 +36,14 @@ Exit status: 0 nothing at or above the gate; 1 a finding at or above it; 2 wrong
 read, parsed or validated; 3 a defect of the program itself. When several apply, the highest.`,
 		Example: `  halfplane check
   halfplane check shelf/ --fail-at warning
-  halfplane check shelf/beacon.converter.yaml --as json
+  halfplane check shelf/profiler.converter.yaml --as json
   halfplane check shelf/ --as json --to findings.json --as text`,
 		RunE: func(cmd *cobra.Command, args []string) error { return c.run(cmd, args) },
 	}
 	c.formFlags = addFormFlags(cmd)
 	c.failAt = addChoice(cmd, "fail-at", "error", "least severity that makes the exit status 1", "error", "warning", "note", "never")
-	cmd.Flags().StringSliceVar(&c.only, "only", nil, "these rules only (`RULE,…`); what keeps a file from being read is always reported")
-	cmd.Flags().StringSliceVar(&c.without, "without", nil, "all rules but these (`RULE,…`)")
+	cmd.Flags().StringSliceVar(&c.only, "only", nil, "these rules only (`RULE,...`); what keeps a file from being read is always reported")
+	cmd.Flags().StringSliceVar(&c.without, "without", nil, "all rules but these (`RULE,...`)")
 	cmd.Flags().BoolVar(&c.quiet, "quiet", false, "findings only, no line of totals")
 	c.analysisFlags = addAnalysisFlags(cmd)
 	cobra.CheckErr(cmd.RegisterFlagCompletionFunc("only", completeRules))

@@ -32,15 +32,15 @@ beside the closed forms without losses, and the worst figures over all corners a
 in the spec: of the winding's own side, one piece, one phase, before bias derating. Fields left out are nominal.
 
 Exit status: 0, or 2 for wrong usage or a file that could not be read, parsed or validated.`,
-		Example: `  halfplane figures shelf/beacon.converter.yaml
-  halfplane figures shelf/beacon.converter.yaml --as json --corners all
-  halfplane figures shelf/beacon.converter.yaml --at 'input-voltage=9 V,load.current=1.5,inductor.inductance=26.4uH'`,
+		Example: `  halfplane figures shelf/profiler.converter.yaml
+  halfplane figures shelf/profiler.converter.yaml --as json --corners all
+  halfplane figures shelf/profiler.converter.yaml --at 'input-voltage=9 V,load.current=1.5,inductor.inductance=26.4uH'`,
 		Args:              cobra.ExactArgs(1),
 		ValidArgsFunction: completeDesigns,
 		RunE:              func(cmd *cobra.Command, args []string) error { return c.run(cmd, args[0]) },
 	}
 	c.formFlags = addFormFlags(cmd)
-	cmd.Flags().StringArrayVar(&c.at, "at", nil, "one point only: `PATH=VALUE,…`")
+	cmd.Flags().StringArrayVar(&c.at, "at", nil, "one point only: `PATH=VALUE,...`")
 	c.corners = addChoice(cmd, "corners", "operating", "which corners are listed: the operating corners and those of the worst figures, or all that were analysed", "operating", "all")
 	c.analysisFlags = addAnalysisFlags(cmd)
 	return cmd

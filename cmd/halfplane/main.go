@@ -66,7 +66,7 @@ operating corner and part tolerance, and reports what is too close to trouble, a
 Exit status: 0 nothing at or above the gate; 1 a finding at or above it; 2 wrong usage, or a file that could not be
 read, parsed or validated; 3 a defect of the program itself. When several apply, the highest.`,
 		Example: `  halfplane check shelf/
-  halfplane figures shelf/beacon.converter.yaml
+  halfplane figures shelf/profiler.converter.yaml
   halfplane demo`,
 		Version:           version,
 		SilenceErrors:     true,
