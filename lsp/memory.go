@@ -3,6 +3,7 @@ package lsp
 import (
 	"os"
 	"runtime/debug"
+	"time"
 )
 
 const (
@@ -13,6 +14,10 @@ const (
 	// softLimit is where sweeping becomes frequent whatever garbagePercent says, in bytes: the room that is promised for a
 	// server with a large workspace.
 	softLimit = 150 << 20
+	// largeText is a text whose memory is given back to the system when it has gone, in bytes, and shedAfter how long
+	// after: no real spec file is as large, a pasted log may be.
+	largeText = 1 << 20
+	shedAfter = 2 * time.Second
 )
 
 // roomy sets the collector for a process that serves an editor, and gives the function that sets it back. What the
@@ -34,5 +39,16 @@ func roomy() (back func()) {
 		if !ownLimit {
 			debug.SetMemoryLimit(limit)
 		}
+	}
+}
+
+// shed is told of a text that has been replaced or closed. The caller holds the lock.
+func (s *server) shed(t *text) {
+	switch {
+	case len(t.bytes) < largeText:
+	case s.shedding == nil:
+		s.shedding = time.AfterFunc(shedAfter, debug.FreeOSMemory)
+	default:
+		s.shedding.Reset(shedAfter)
 	}
 }

@@ -67,6 +67,7 @@ type server struct {
 	folders  []string // of the client's workspace, as paths
 	desks    map[string]*desk
 	spaces   map[string]*workspace.Workspace // by root
+	shedding *time.Timer                     // until memory is given back; nil: never needed so far
 }
 
 // Serve runs the server over a pair of streams until the client says exit, the input ends, the client's process dies or

@@ -59,6 +59,7 @@ func (s *server) changed(raw json.RawMessage) error {
 	if p.Document.Version != nil {
 		version = *p.Document.Version
 	}
+	s.shed(d.current.text)
 	d.renew(s.root, newSnapshot(d, d.current.text.changed(p.Changes, s.columns), version))
 	return nil
 }
@@ -93,6 +94,7 @@ func (s *server) closed(raw json.RawMessage) error {
 		return notOpen(*p.Document.URI)
 	}
 	d.leave()
+	s.shed(d.current.text)
 	delete(s.desks, d.uri)
 	if d.served {
 		s.clear(d)
