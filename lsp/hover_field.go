@@ -19,8 +19,7 @@ func (p *place) aboutField(info schema.FieldInfo, pointer string) {
 	p.title(title, unit)
 	p.say(info.Description)
 	if q, stale, ok := p.quantity(info, pointer); ok {
-		p.list(p.inWords(q, stale))
-		p.list(p.sets(pointer))
+		p.list(append(inWords(q, stale), p.sets(pointer)...))
 		return
 	}
 	if len(info.Names) > 0 {
@@ -52,12 +51,11 @@ func (p *place) quantity(info schema.FieldInfo, pointer string) (q schema.Quanti
 	return q, true, ok
 }
 
-// inWords gives a quantity as lines: the value, the plain SI number, the spread.
-func (p *place) inWords(q schema.Quantity, stale bool) []string {
-	nominal := figure(q.Nominal, q.Unit)
-	line := nominal
-	if plain := strings.TrimSpace(strconv.FormatFloat(q.Nominal, 'g', 6, 64) + " " + q.Unit); plain != nominal {
-		line += " = " + plain
+// inWords gives a quantity as lines: the value, the plain SI number where that reads otherwise, the spread.
+func inWords(q schema.Quantity, stale bool) []string {
+	line := figure(q.Nominal, q.Unit)
+	if !readsAs(line, q) {
+		line += " = " + strings.TrimSpace(strconv.FormatFloat(q.Nominal, 'g', 6, 64)+" "+q.Unit)
 	}
 	if q.AssumedNominal {
 		line += " (midpoint, none is stated)"
@@ -70,6 +68,13 @@ func (p *place) inWords(q schema.Quantity, stale bool) []string {
 		out = append(out, "from "+figure(q.Min, q.Unit)+" to "+figure(q.Max, q.Unit)+percent(q))
 	}
 	return out
+}
+
+// readsAs tells whether a shown value is the plain SI number already: no prefix, no digit lost.
+func readsAs(shown string, q schema.Quantity) bool {
+	number, unit, _ := strings.Cut(strings.Replace(shown, "°", " deg", 1), " ")
+	value, err := strconv.ParseFloat(strings.Replace(number, "−", "-", 1), 64)
+	return err == nil && value == q.Nominal && unit == q.Unit
 }
 
 // percent gives a spread relative to the nominal value.

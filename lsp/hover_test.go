@@ -49,7 +49,7 @@ func TestHoverOnAQuantityTellsItsValueSpreadAndWhatItSets(t *testing.T) {
 		{"capacitance", "220 µF", 1, []string{"sets resonance", "sets ESR zero"}, "right-half-plane"},
 		{"feedback resistor", "18 kΩ", 1, []string{"18.0 kΩ", "sets the network's zero", "sets the network's pole"}, "resonance"},
 		{"upper resistor", "100 kΩ", 1, []string{"sets the output voltage", "sets the network's integrator"}, ""},
-		{"ramp", "1.8 V", 1, []string{"sets modulator gain"}, "resonance"},
+		{"ramp", "1.8 V", 1, []string{"- 1.80 V\n", "sets modulator gain"}, "resonance"},
 	} {
 		t.Run(c.name, func(t *testing.T) {
 			got, _ := k.hoverAt(uri, on(t, text, c.at, c.into))

@@ -18,10 +18,7 @@ func (p *place) aboutTopology() {
 		return
 	}
 	p.say("At nominal input, load and parts (" + c.Plant.Mode.String() + "), ideal and with losses" + stale + ":")
-	p.list(pairs(c))
-	if c.Loop != nil {
-		p.list(loopLines(c))
-	}
+	p.list(append(pairs(c), loopLines(c)...))
 }
 
 // figures gives the check whose figures are shown, and what to say where it is one of an older text.
@@ -72,7 +69,11 @@ func pairs(c *analysis.Corner) []string {
 	return out
 }
 
+// loopLines gives the margins of the lossy loop, none where there is no model.
 func loopLines(c *analysis.Corner) []string {
+	if c.Loop == nil {
+		return nil
+	}
 	var out []string
 	for _, f := range []struct {
 		name  string
