@@ -51,11 +51,15 @@ var comparatorRipple = Rule{
 			f.Message = fmt.Sprintf("the averaged phase margin is %s, but with the output ripple at the comparator the loop is unstable (phase margin %s, target %s)",
 				number(averaged, "deg"), number(with, "deg"), number(target, "deg"))
 		}
-		f.Formula = fmt.Sprintf("%s - %s = %s lost; %s - %s = %s allowed", number(averaged, "deg"), number(with, "deg"), number(averaged-with, "deg"),
+		f.Formula = fmt.Sprintf("%s - (%s) = %s lost; %s - %s = %s allowed", number(averaged, "deg"), number(with, "deg"), number(averaged-with, "deg"),
 			number(target, "deg"), number(limit, "deg"), number(target-limit, "deg"))
 		f.Measured, f.Limit = asNumber(with, "deg"), asNumber(target-limit, "deg")
 		if k := c.nominal(); hasRipple(k) {
 			f.Nominal = asNumber(k.Ripple.PhaseMargin, "deg")
+		}
+		if !(averaged-with > limit) && c.unstable() != nil {
+			// The averaged loop is itself at the edge here; the ripple only tips it over.
+			f.Cause = &Cause{Rule: "closed-loop-stability"}
 		}
 		c.relate(&f, "decides the ripple at the comparator", "/output-capacitor/esr", "/output-capacitors", "/compensator/lead-capacitor", "/compensator/rolloff-capacitor", "/modulator/ramp-amplitude")
 		return []Finding{f}

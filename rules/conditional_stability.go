@@ -38,6 +38,10 @@ var conditionalStability = Rule{
 		}
 		f.Formula = fmt.Sprintf("20 log10(%s) = %s", short(math.Pow(10, -negative/20)), number(-negative, "dB"))
 		f.Measured, f.Limit, f.Nominal = asNumber(-negative, "dB"), asNumber(limit, "dB"), asNumber(margin(c.nominal()), "dB")
+		if c.unstable() != nil {
+			// A loop that is lost at one corner is near to being lost at its neighbours.
+			f.Cause = &Cause{Rule: "closed-loop-stability"}
+		}
 		return []Finding{f}
 	},
 }

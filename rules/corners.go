@@ -11,13 +11,14 @@ import (
 )
 
 // worst finds the corner with the highest score; a corner whose score is NaN is passed over. It returns nil when no corner
-// has a score. Of equal corners the first in the analysis' order counts: nominal before operating before refined.
+// has a score. Of corners that are equal but for rounding the first in the analysis' order counts: nominal before operating
+// before refined.
 func (c *Case) worst(score func(*analysis.Corner) float64) (*analysis.Corner, float64) {
 	var found *analysis.Corner
 	highest := math.Inf(-1)
 	for i := range c.Result.Corners {
 		corner := &c.Result.Corners[i]
-		if s := score(corner); s > highest {
+		if s := score(corner); s > highest && (found == nil || s-highest > 1e-9*math.Abs(highest)) {
 			found, highest = corner, s
 		}
 	}

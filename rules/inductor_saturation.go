@@ -4,6 +4,7 @@ import (
 	"fmt"
 
 	"halfplane/analysis"
+	"halfplane/analysis/plant"
 )
 
 var inductorSaturation = Rule{
@@ -43,15 +44,26 @@ func saturation(c *Case, winding string, lowest float64) []Finding {
 	if peak > lowest {
 		f.Message = fmt.Sprintf("the inductor's peak current %s is above its saturation current %s (limit %s)", number(peak, "A"), number(lowest, "A"), number(limit, "A"))
 	}
-	average, ripple := corner.Plant.InductorCurrent, corner.Plant.InductorRipple
-	if winding == "/second-inductor" {
-		average, ripple = corner.Plant.SecondCurrent, corner.Plant.SecondRipple
-	}
-	f.Formula = fmt.Sprintf("%s <= (1 - %s) * %s = %s; average %s, ripple %s on the output side",
-		number(peak, "A"), short(c.threshold(saturationHeadroom)), number(lowest, "A"), number(limit, "A"), number(average, "A"), number(ripple, "A"))
+	f.Formula = fmt.Sprintf("%s <= (1 - %s) * %s = %s", peakFormula(c, corner, winding, peak), short(c.threshold(saturationHeadroom)), number(lowest, "A"), number(limit, "A"))
 	f.Measured, f.Limit, f.Nominal = asNumber(peak, "A"), asNumber(limit, "A"), asNumber(windingPeak(c, c.nominal(), winding), "A")
 	c.relate(&f, "decides the peak current", "/load/current", "/input-voltage", winding+"/inductance", "/turns", "/phases")
 	return []Finding{f}
+}
+
+// peakFormula is the sum that leads to a winding's peak current, to be redone with a calculator.
+func peakFormula(c *Case, k *analysis.Corner, winding string, peak float64) string {
+	average, ripple := k.Plant.InductorCurrent, k.Plant.InductorRipple
+	if winding == "/second-inductor" {
+		average, ripple = k.Plant.SecondCurrent, k.Plant.SecondRipple
+	}
+	sum := fmt.Sprintf("%s + %s/2", number(average, "A"), number(ripple, "A"))
+	if k.Plant.Mode == plant.Discontinuous {
+		sum = "ripple " + number(ripple, "A")
+	}
+	if circuit := &c.Design.Nominal.Circuit; circuit.Topology.Isolated() && circuit.InductorOnPrimary {
+		sum = fmt.Sprintf("(%s) * %s", sum, number(k.Plant.TurnsRatio, ""))
+	}
+	return sum + " = " + number(peak, "A")
 }
 
 // windingPeak is the peak current (A) of one winding on its own side, NaN at a corner out of reach.

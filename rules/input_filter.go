@@ -26,6 +26,10 @@ var inputFilter = Rule{
 		if corner == nil || ratio < limit {
 			return nil
 		}
+		harm, at := filterHarm(c)
+		if harm != "" {
+			corner, ratio = at, impedance(at)
+		}
 		f := c.atCorner("/input-filter", corner)
 		which := "ZN"
 		if corner.Plant.Input.ZoOverZd > corner.Plant.Input.ZoOverZn {
@@ -34,10 +38,9 @@ var inputFilter = Rule{
 		f.Message = fmt.Sprintf("the input filter's output impedance reaches %s times the converter's %s, limit %s", number(ratio, ""), which, number(limit, ""))
 		f.Formula = fmt.Sprintf("max |Zo/%s| = %s < %s", which, short(ratio), short(limit))
 		f.Measured, f.Limit, f.Nominal = asNumber(ratio, ""), asNumber(limit, ""), asNumber(impedance(c.nominal()), "")
-		if harm, at := filterHarm(c); harm != "" {
-			f.Severity, f.Corner = Error, at.At
+		if harm != "" {
+			f.Severity = Error
 			f.Message += ", and " + harm
-			f.Measured = asNumber(impedance(at), "")
 		}
 		c.relate(&f, "decides the filter's impedance", "/input-filter/inductance", "/input-filter/capacitance", "/input-filter/damping-resistance", "/input-filter/damping-capacitance")
 		c.relate(&f, "decides the converter's input impedance", "/input-voltage", "/load/current")

@@ -80,6 +80,7 @@ func marksOf(text string) []mark {
 // found is what a finding looks like as a mark.
 func found(f Finding) mark {
 	text, _, _ := strings.Cut(string(f.Doc.Text[f.Start:f.End]), "\n")
+	text, _, _ = strings.Cut(text, "   # ") // a mapping's first line holds its mark
 	return mark{f.Doc.Position(f.Start).Line, f.Rule, strings.TrimRight(text, " \r")}
 }
 
@@ -88,6 +89,9 @@ func TestFindingsAreExactlyTheMarkedOnes(t *testing.T) {
 	require.NoError(t, err)
 	require.NotEmpty(t, files)
 	for _, path := range files {
+		if strings.HasSuffix(path, ".marks") {
+			continue
+		}
 		t.Run(strings.TrimPrefix(filepath.ToSlash(path), shelf+"/"), func(t *testing.T) {
 			findings, _ := check(t, path, Settings{})
 			text, err := os.ReadFile(path)

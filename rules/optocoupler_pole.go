@@ -38,7 +38,7 @@ var optocouplerPole = Rule{
 			number(q.Nominal, "Hz"), short(c.threshold(optoClearance)), number(fc, "Hz"), number(limit, "Hz"))
 		f.Formula = fmt.Sprintf("%s * %s = %s", short(c.threshold(optoClearance)), number(fc, "Hz"), number(limit, "Hz"))
 		f.Measured, f.Limit, f.Nominal = asNumber(q.Nominal, "Hz"), asNumber(limit, "Hz"), asNumber(q.Nominal, "Hz")
-		c.relate(&f, "decides crossover and pole", "/compensator/led-resistor", "/compensator/pull-up-resistor", "/compensator/current-transfer-ratio")
+		c.relate(&f, "decides crossover or pole", "/compensator/led-resistor", "/compensator/pull-up-resistor", "/compensator/current-transfer-ratio")
 		return []Finding{f}
 	},
 }

@@ -40,8 +40,18 @@ var rhpZeroCrossover = Rule{
 		if all := c.Result.Worst.HighestCrossoverOverLowestRHPZero; !math.IsNaN(all) {
 			f.tell(fmt.Sprintf("for information: the highest crossover of all over the lowest zero of all is %s", number(all, "")))
 		}
+		c.blameFilter(&f)
 		return []Finding{f}
 	},
+}
+
+// blameFilter marks a finding about a right-half-plane zero that only an input filter can have made: the buck family has none
+// of its own.
+func (c *Case) blameFilter(f *Finding) {
+	if c.Spec.Has("/input-filter") && !c.Design.Nominal.Circuit.Topology.HasDutyPeak() {
+		f.Cause = &Cause{Rule: "input-filter"}
+		c.relate(f, "makes the right-half-plane zero", "/input-filter")
+	}
 }
 
 // rhpZero is a corner's lowest right-half-plane zero (Hz), NaN where there is none or no model.

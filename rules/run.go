@@ -93,13 +93,13 @@ func causeOf(rule string) string {
 func tieCauses(findings []Finding) {
 	for i := range findings {
 		f := &findings[i]
-		cause := causeOf(f.Rule)
-		if f.Cause != nil {
-			cause = f.Cause.Rule
+		cause, anyCorner := causeOf(f.Rule), false
+		if f.Cause != nil { // the rule knows better
+			cause, anyCorner = f.Cause.Rule, true
 		}
 		f.Cause = nil
 		at := slices.IndexFunc(findings, func(g Finding) bool { return g.Rule == cause })
-		if cause == "" || at < 0 || f.Corner != nil && !sameCorner(f.Corner, findings[at].Corner) {
+		if cause == "" || at < 0 || !anyCorner && !sameCorner(f.Corner, findings[at].Corner) {
 			continue
 		}
 		f.Cause = &Cause{Rule: cause, Pointer: findings[at].Pointer}

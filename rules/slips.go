@@ -76,7 +76,7 @@ func slipsOf(c *Case, corner *analysis.Corner, figure statedFigure, got float64)
 	if circuit.Modulator.Scheme == plant.PeakCurrentMode && strings.HasSuffix(figure.key, "-gain") {
 		figure.ideal = nil // the closed forms are per unit duty, the figure is per control volt
 	}
-	w := workings{circuit: &circuit, figure: figure, got: got, ideal: math.NaN()}
+	w := workings{circuit: &circuit, figure: figure, got: got, ideal: math.NaN(), mode: corner.Plant.Mode}
 	if figure.ideal != nil {
 		base := plant.IdealOf(&circuit)
 		w.ideal = figure.ideal(&base)

@@ -11,6 +11,7 @@ type workings struct {
 	circuit    *plant.Circuit
 	figure     statedFigure
 	got, ideal float64
+	mode       plant.Mode
 }
 
 // factor is a slip that multiplies the figure.
@@ -26,6 +27,8 @@ func (w workings) factor(rule, words string, by float64) slip {
 func (w workings) changed(rule, words string, change func(*plant.Circuit)) (s slip, ok bool) {
 	circuit := *w.circuit
 	change(&circuit)
+	// Whoever made the slip went on computing in the mode that the figure is stated for.
+	circuit.Synchronous = circuit.Synchronous || w.mode == plant.Continuous
 	s = slip{rule: rule, words: words}
 	if w.figure.ideal != nil {
 		ideal := plant.IdealOf(&circuit)
@@ -114,15 +117,15 @@ func (w workings) reflections(n float64) []slip {
 		}
 	}
 	var slips []slip
+	power := 1.0 // of the inductance in the figure
+	switch w.figure.key {
+	case "rhp-zero":
+		power = -1
+	case "resonance":
+		power = -1.0 / 2
+	}
 	for _, one := range all {
-		by := math.Pow(n, one.power)
-		if w.figure.key == "effective-inductance" {
-			slips = append(slips, w.factor("reflected-inductance", one.words, by))
-			continue
-		}
-		if s, ok := w.changed("reflected-inductance", one.words, func(c *plant.Circuit) { c.Inductor.Inductance *= by }); ok {
-			slips = append(slips, s)
-		}
+		slips = append(slips, w.factor("reflected-inductance", one.words, math.Pow(n, one.power*power)))
 	}
 	return slips
 }

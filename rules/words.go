@@ -23,7 +23,7 @@ func number(value float64, unit string) string {
 
 // percent prints a ratio per cent to three significant digits.
 func percent(ratio float64) string {
-	return schema.Format(ratio*100, "%")
+	return schema.Format(ratio, "%")
 }
 
 // fraction prints a limit that is one part of something as 1/5, anything else as a number.
@@ -66,6 +66,18 @@ func lastKey(pointer string) string {
 
 // spaced turns a key into words.
 func spaced(key string) string {
+	switch key {
+	case "esr":
+		return "ESR"
+	case "esr-zero":
+		return "ESR zero"
+	case "rhp-zero":
+		return "right-half-plane zero"
+	case "led-resistor":
+		return "LED resistor"
+	case "pull-up-resistor":
+		return "pull-up resistor"
+	}
 	return strings.ReplaceAll(key, "-", " ")
 }
 
@@ -139,9 +151,6 @@ func (c *Case) nominalOf(path string) (nominal float64, unit string, isRange boo
 func pathWords(path string) string {
 	steps := strings.Split(path, ".")
 	label := spaced(steps[len(steps)-1])
-	if label == "esr" {
-		label = "ESR"
-	}
 	if item, err := strconv.Atoi(label); err == nil && len(steps) > 1 {
 		label = fmt.Sprintf("%s %d", spaced(steps[len(steps)-2]), item+1)
 	}
