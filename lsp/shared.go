@@ -113,7 +113,7 @@ func linksOf(w *workspace.Workspace, doc *schema.Document) []string {
 	var out []string
 	var visit func(*schema.Document)
 	visit = func(doc *schema.Document) {
-		references(doc.Root, func(reference string) {
+		workspace.References(doc.Root, func(reference string) {
 			local := filepath.FromSlash(reference)
 			if reference == "" || filepath.IsAbs(local) || strings.ContainsRune(reference, 0) {
 				return
@@ -130,29 +130,6 @@ func linksOf(w *workspace.Workspace, doc *schema.Document) []string {
 	}
 	visit(doc)
 	return out
-}
-
-// references calls take with the values of `use` and the items of `libraries`.
-func references(n *schema.Node, take func(string)) {
-	if n == nil {
-		return
-	}
-	for _, e := range n.Entries {
-		switch {
-		case e.Value == nil:
-		case e.Key == "use" && e.Value.Kind == schema.Scalar:
-			take(e.Value.Value)
-		case e.Key == "libraries":
-			for _, item := range e.Value.Items {
-				take(item.Value)
-			}
-		default:
-			references(e.Value, take)
-		}
-	}
-	for _, item := range n.Items {
-		references(item, take)
-	}
 }
 
 // filesChanged is told by the client that files changed outside of it.

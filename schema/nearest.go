@@ -53,9 +53,9 @@ func oneEditAway(written string, known []string) string {
 	return found
 }
 
-// nearest is the known name most like the written one, "" if none is near: a third of its letters may differ, and a
+// Nearest is the known name most like the written one, "" if none is near: a third of its letters may differ, and a
 // name that the written one begins or ends with counts as near.
-func nearest(written string, known []string) string {
+func Nearest(written string, known []string) string {
 	best, least := "", len([]rune(written))/3+1
 	for _, k := range known {
 		if n := edits(spelling(written), k); n < least || n == least && best == "" {

@@ -228,7 +228,7 @@ func (g *grower) unknownPart(name string) string {
 		}
 	}
 	message := fmt.Sprintf("no library has a part '%s'", shown(name))
-	if near := nearest(name, names); near != "" {
+	if near := Nearest(name, names); near != "" {
 		message += fmt.Sprintf(": did you mean '%s'?", shown(near))
 	}
 	return message

@@ -79,7 +79,7 @@ func (v *validation) word(l leaf) {
 				v.unknown(s, e)
 			}
 		}
-	case "properties": // reported by unused
+	case "unused": // reported by unused
 	default:
 		v.onValue(s, shapeRule, v.wrongValue(s, l))
 	}
@@ -143,7 +143,7 @@ func (v *validation) onValue(s *site, rule, message string) {
 // unknown reports a key that the schema has not, with the nearest that it has.
 func (v *validation) unknown(s *site, e *Entry) {
 	message := fmt.Sprintf("unknown key '%s'%s", shown(e.Key), within(s))
-	if near := nearest(e.Key, s.field.keys()); near != "" {
+	if near := Nearest(e.Key, s.field.keys()); near != "" {
 		message += fmt.Sprintf(": did you mean '%s'?", near)
 	}
 	v.onKey(s, e, message)

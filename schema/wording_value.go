@@ -32,7 +32,7 @@ func wrongName(s *site, found string) string {
 	names := s.field.names()
 	message := fmt.Sprintf("%s expects one of %s, found %s", s.name(), strings.Join(names, ", "), found)
 	if s.node.Kind == Scalar {
-		if near := nearest(s.node.Value, names); near != "" {
+		if near := Nearest(s.node.Value, names); near != "" {
 			message += fmt.Sprintf(": did you mean '%s'?", near)
 		}
 	}
@@ -52,7 +52,7 @@ func wrongLength(s *site) string {
 
 // wantedType says what a field holds.
 func (v *validation) wantedType(s *site) string {
-	kind := s.field.first(func(f *field) string { return strings.Join(f.Type, " ") })
+	kind := s.field.first(func(f *field) string { return strings.Join(f.types, " ") })
 	switch kind {
 	case "object":
 		if s.field.open() {
@@ -76,7 +76,7 @@ func typeHint(s *site) string {
 	if s.node.Kind != Scalar {
 		return ""
 	}
-	kind := s.field.first(func(f *field) string { return strings.Join(f.Type, " ") })
+	kind := s.field.first(func(f *field) string { return strings.Join(f.types, " ") })
 	switch {
 	case kind == "boolean" && slices.Contains([]string{"yes", "on", "y"}, strings.ToLower(s.node.Value)):
 		return ": did you mean true?"
@@ -90,7 +90,7 @@ func typeHint(s *site) string {
 
 // unused reports a key that the network, scheme or topology has no use for; everything inside it is then beside the point.
 func (v *validation) unused(l leaf) {
-	if l.keyword != "properties" {
+	if l.keyword != "unused" {
 		return
 	}
 	s := v.find(l.at)

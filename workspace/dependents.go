@@ -96,7 +96,7 @@ func (w *Workspace) readReferences(abs string, doc *schema.Document) []string {
 		doc = schema.Read(filepath.ToSlash(abs), text, 0)
 	}
 	var to []string
-	collect(doc.Root, func(reference string) {
+	References(doc.Root, func(reference string) {
 		if at, err := w.locate(abs, reference); err == nil {
 			to = append(to, at)
 		}
@@ -104,8 +104,8 @@ func (w *Workspace) readReferences(abs string, doc *schema.Document) []string {
 	return to
 }
 
-// collect calls take with every path that the tree refers to: the values of `use` and the items of `libraries`.
-func collect(n *schema.Node, take func(string)) {
+// References calls take with every path that a document's tree refers to: the values of `use` and the items of `libraries`.
+func References(n *schema.Node, take func(string)) {
 	if n == nil {
 		return
 	}
@@ -118,10 +118,10 @@ func collect(n *schema.Node, take func(string)) {
 				take(item.Value)
 			}
 		default:
-			collect(e.Value, take)
+			References(e.Value, take)
 		}
 	}
 	for _, item := range n.Items {
-		collect(item, take)
+		References(item, take)
 	}
 }

@@ -82,13 +82,3 @@ func TestVerdictOnAnExhibit(t *testing.T) {
 	_, ok := healthy.verdict(workspace.File{Defect: true})
 	assert.False(t, ok, "the program failed")
 }
-
-func TestNamesNearOneAnother(t *testing.T) {
-	for _, c := range []struct {
-		a, b string
-		want int
-	}{{"", "", 0}, {"a", "", 1}, {"phase-margin", "phase-margin", 0}, {"phase-margn", "phase-margin", 1}, {"pahse-margin", "phase-margin", 1}, {"gain", "main", 1}, {"µs", "us", 1}} {
-		assert.Equal(t, c.want, distance(c.a, c.b), "%s %s", c.a, c.b)
-		assert.Equal(t, c.want, distance(c.b, c.a))
-	}
-}

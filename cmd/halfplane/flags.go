@@ -10,6 +10,7 @@ import (
 
 	"halfplane/analysis"
 	"halfplane/rules"
+	"halfplane/schema"
 )
 
 // choice is a flag that takes one of a few words.
@@ -109,43 +110,14 @@ func ruleNames(flag string, names []string) error {
 
 // suggest names the rule that was probably meant.
 func suggest(name string) string {
-	best, least := "", len(name)/2+1
+	var known []string
 	for _, r := range rules.All() {
-		if d := distance(name, r.Name); d < least {
-			best, least = r.Name, d
-		}
+		known = append(known, r.Name)
 	}
-	if best == "" {
-		return " ('halfplane rule' lists them)"
+	if best := schema.Nearest(name, known); best != "" {
+		return fmt.Sprintf("; did you mean %q?", best)
 	}
-	return fmt.Sprintf("; did you mean %q?", best)
-}
-
-// distance counts the insertions, deletions, replacements and swaps of neighbours between two words (Damerau 1964,
-// restricted to one edit per place).
-func distance(a, b string) int {
-	x, y := []rune(a), []rune(b)
-	rows := make([][]int, len(x)+1)
-	for i := range rows {
-		rows[i] = make([]int, len(y)+1)
-		rows[i][0] = i
-	}
-	for j := range rows[0] {
-		rows[0][j] = j
-	}
-	for i := 1; i <= len(x); i++ {
-		for j := 1; j <= len(y); j++ {
-			replace := 1
-			if x[i-1] == y[j-1] {
-				replace = 0
-			}
-			rows[i][j] = min(rows[i-1][j]+1, rows[i][j-1]+1, rows[i-1][j-1]+replace)
-			if i > 1 && j > 1 && x[i-1] == y[j-2] && x[i-2] == y[j-1] {
-				rows[i][j] = min(rows[i][j], rows[i-2][j-2]+1)
-			}
-		}
-	}
-	return rows[len(x)][len(y)]
+	return " ('halfplane rule' lists them)"
 }
 
 // completeRules offers the rules' names.
