@@ -32,41 +32,32 @@ type dimensionFacts struct {
 	typed string   // an example that a message can show
 }
 
+// dimensions is the table, at the index of the value.
+var dimensions = [...]dimensionFacts{
+	Plain:           {"plain", "", "a plain number", nil, nil, "16"},
+	Count:           {"count", "", "a whole number of 1 or more", nil, nil, "2"},
+	Ratio:           {"ratio", "", "a ratio", nil, []string{"%"}, "0.25"},
+	Gain:            {"gain", "", "a ratio or decibels", nil, []string{"%", "dB"}, "90 dB"},
+	Angle:           {"angle", "deg", "degrees", nil, []string{"deg", "°", "degree", "degrees"}, "45 deg"},
+	Decibel:         {"decibel", "dB", "decibels", nil, []string{"dB"}, "8 dB"},
+	Inductance:      {"inductance", "H", "henries", []string{"H"}, nil, "22 uH"},
+	Capacitance:     {"capacitance", "F", "farads", []string{"F"}, nil, "220 uF"},
+	Resistance:      {"resistance", "Ω", "ohms", []string{"Ω", "\u2126", "ohm", "Ohm", "ohms", "R"}, nil, "25 mΩ"},
+	Transresistance: {"transresistance", "Ω", "ohms (volts per ampere)", []string{"Ω", "\u2126", "ohm", "Ohm", "ohms", "R", "V/A"}, nil, "50 mΩ"},
+	Conductance:     {"conductance", "S", "siemens (amperes per volt)", []string{"S", "A/V"}, nil, "1 mS"},
+	Voltage:         {"voltage", "V", "volts", []string{"V"}, nil, "12 V"},
+	Current:         {"current", "A", "amperes", []string{"A"}, nil, "1.5 A"},
+	Frequency:       {"frequency", "Hz", "hertz", []string{"Hz"}, nil, "250 kHz"},
+	Time:            {"time", "s", "seconds", []string{"s"}, nil, "100 ns"},
+	Slope:           {"slope", "V/s", "volts per second", []string{"V/s"}, nil, "60 mV/us"},
+}
+
 // facts are the properties of d; of an unknown dimension those of Plain.
-func (d Dimension) facts() dimensionFacts {
-	switch d {
-	case Count:
-		return dimensionFacts{"count", "", "a whole number of 1 or more", nil, nil, "2"}
-	case Ratio:
-		return dimensionFacts{"ratio", "", "a ratio", nil, []string{"%"}, "0.25"}
-	case Gain:
-		return dimensionFacts{"gain", "", "a ratio or decibels", nil, []string{"%", "dB"}, "90 dB"}
-	case Angle:
-		return dimensionFacts{"angle", "deg", "degrees", nil, []string{"deg", "°", "degree", "degrees"}, "45 deg"}
-	case Decibel:
-		return dimensionFacts{"decibel", "dB", "decibels", nil, []string{"dB"}, "8 dB"}
-	case Inductance:
-		return dimensionFacts{"inductance", "H", "henries", []string{"H"}, nil, "22 uH"}
-	case Capacitance:
-		return dimensionFacts{"capacitance", "F", "farads", []string{"F"}, nil, "220 uF"}
-	case Resistance:
-		return dimensionFacts{"resistance", "Ω", "ohms", []string{"Ω", "\u2126", "ohm", "Ohm", "ohms", "R"}, nil, "25 mΩ"}
-	case Transresistance:
-		return dimensionFacts{"transresistance", "Ω", "ohms (volts per ampere)", []string{"Ω", "\u2126", "ohm", "Ohm", "ohms", "R", "V/A"}, nil, "50 mΩ"}
-	case Conductance:
-		return dimensionFacts{"conductance", "S", "siemens (amperes per volt)", []string{"S", "A/V"}, nil, "1 mS"}
-	case Voltage:
-		return dimensionFacts{"voltage", "V", "volts", []string{"V"}, nil, "12 V"}
-	case Current:
-		return dimensionFacts{"current", "A", "amperes", []string{"A"}, nil, "1.5 A"}
-	case Frequency:
-		return dimensionFacts{"frequency", "Hz", "hertz", []string{"Hz"}, nil, "250 kHz"}
-	case Time:
-		return dimensionFacts{"time", "s", "seconds", []string{"s"}, nil, "100 ns"}
-	case Slope:
-		return dimensionFacts{"slope", "V/s", "volts per second", []string{"V/s"}, nil, "60 mV/us"}
+func (d Dimension) facts() *dimensionFacts {
+	if d < Plain || d > Slope {
+		d = Plain
 	}
-	return dimensionFacts{"plain", "", "a plain number", nil, nil, "16"}
+	return &dimensions[d]
 }
 
 // Unit is the SI symbol of the dimension's unit: "H", "V/s", "" for ratios and plain numbers, "deg", "dB".

@@ -75,19 +75,14 @@ func (g *grower) spell(n *Node, f *field) {
 	if f.open() {
 		return
 	}
-	known := f.keys()
-	has := map[string]bool{}
-	for _, e := range n.Entries {
-		has[e.Key] = true
-	}
 	for i := range n.Entries {
 		e := &n.Entries[i]
-		if containsText(known, e.Key) {
+		if f.child(e.Key) != nil {
 			continue
 		}
-		if right := oneEditAway(e.Key, known); right != "" && !has[right] {
+		if right := oneEditAway(e.Key, f.keys()); right != "" && n.Entry(right) == nil {
 			g.misspelt[spot{e.KeyDoc, e.KeyStart}] = e.Key
-			e.Key, has[right] = right, true
+			e.Key = right
 		}
 	}
 }

@@ -1,9 +1,7 @@
 package schema
 
 import (
-	"bytes"
 	"embed"
-	"encoding/json"
 	"fmt"
 	"strconv"
 	"strings"
@@ -19,82 +17,26 @@ type field struct {
 	never bool   // the schema "false": the key is not allowed
 	root  *field // of the schema file that it stands in
 
-	ID          string            `json:"$id"`
-	Ref         string            `json:"$ref"`
-	Title       string            `json:"title"`
-	Description string            `json:"description"`
-	Default     json.RawMessage   `json:"default"`
-	Examples    []json.RawMessage `json:"examples"`
+	ref, title, description string
+	fallback                *Node   // "default"
+	examples                []*Node // likewise as they stand in the schema
 
-	Dimension string  `json:"dimension"`
-	Sign      string  `json:"sign"`
-	Because   string  `json:"because"`
-	Most      float64 `json:"most"`
-	Window    bool    `json:"window"`
-	Scalar    bool    `json:"scalar"`
+	dimension, sign, because string
+	most                     float64
+	window, scalar           bool
 
-	Type     oneOrMore         `json:"type"`
-	Enum     []string          `json:"enum"`
-	Const    json.RawMessage   `json:"const"`
-	Required []string          `json:"required"`
-	Keys     properties        `json:"properties"`
-	Others   *field            `json:"additionalProperties"`
-	Items    *field            `json:"items"`
-	Prefix   []*field          `json:"prefixItems"`
-	Then     *field            `json:"then"`
-	Else     *field            `json:"else"`
-	Defs     map[string]*field `json:"$defs"`
-}
-
-// properties are the keys of a mapping in the order of the schema file.
-type properties struct {
-	order []string
-	named map[string]*field
-}
-
-// oneOrMore is a JSON Schema "type": one name or several.
-type oneOrMore []string
-
-func (o *oneOrMore) UnmarshalJSON(text []byte) error {
-	if text[0] == '"' {
-		*o = make(oneOrMore, 1)
-		return json.Unmarshal(text, &(*o)[0])
-	}
-	return json.Unmarshal(text, (*[]string)(o))
-}
-
-func (f *field) UnmarshalJSON(text []byte) error {
-	switch text[0] {
-	case 't':
-		return nil
-	case 'f':
-		f.never = true
-		return nil
-	}
-	type plain field
-	return json.Unmarshal(text, (*plain)(f))
-}
-
-func (p *properties) UnmarshalJSON(text []byte) error {
-	if err := json.Unmarshal(text, &p.named); err != nil {
-		return err
-	}
-	d := json.NewDecoder(bytes.NewReader(text))
-	if _, err := d.Token(); err != nil {
-		return err
-	}
-	for d.More() {
-		key, err := d.Token()
-		if err != nil {
-			return err
-		}
-		p.order = append(p.order, key.(string))
-		var skipped json.RawMessage
-		if err := d.Decode(&skipped); err != nil {
-			return err
-		}
-	}
-	return nil
+	types     []string
+	enum      []string
+	constant  *Node
+	required  []string
+	order     []string // of properties
+	named     map[string]*field
+	others    *field // additionalProperties
+	items     *field
+	prefix    []*field
+	then      *field
+	otherwise *field // else
+	defs      map[string]*field
 }
 
 const commonID = "urn:halfplane:schema:common"
@@ -108,33 +50,92 @@ func schemaText(name string) []byte {
 	return text
 }
 
-// loadField reads one schema file and ties every place in it to its root.
-func loadField(name string) *field {
-	f := new(field)
-	if err := json.Unmarshal(schemaText(name), f); err != nil {
-		panic(fmt.Sprintf("reading the embedded schema %s: %v", name, err)) // a test reads them all
+// schemaTree is an embedded schema file as a tree, in the order of its text.
+func schemaTree(name string) *Node {
+	doc := Read(name+".json", schemaText(name), 0)
+	if len(doc.Problems) > 0 {
+		panic(fmt.Sprintf("reading the embedded schema %s: %s", name, doc.Problems[0].Message)) // a test reads them all
 	}
-	f.tie(f)
+	return doc.Root
+}
+
+// loadField reads one schema file.
+func loadField(name string) *field {
+	root := new(field)
+	root.fill(schemaTree(name), root)
+	return root
+}
+
+// fieldFrom makes a field of a schema, nil of no schema.
+func fieldFrom(n *Node, root *field) *field {
+	if n == nil {
+		return nil
+	}
+	f := new(field)
+	f.fill(n, root)
 	return f
 }
 
-func (f *field) tie(root *field) {
-	if f == nil || f.root != nil {
+func (f *field) fill(n *Node, root *field) {
+	f.root = root
+	if n.Kind == Scalar {
+		f.never = n.Type == Bool && n.Value == "false"
 		return
 	}
-	f.root = root
-	for _, c := range f.Keys.named {
-		c.tie(root)
+	f.ref, f.title, f.description = textOf(n.Get("$ref")), textOf(n.Get("title")), textOf(n.Get("description"))
+	f.fallback, f.constant = n.Get("default"), n.Get("const")
+	if e := n.Get("examples"); e != nil {
+		f.examples = e.Items
 	}
-	for _, c := range f.Defs {
-		c.tie(root)
+	f.dimension, f.sign, f.because = textOf(n.Get("dimension")), textOf(n.Get("sign")), textOf(n.Get("because"))
+	if most := n.Get("most"); most != nil {
+		f.most = most.Number
 	}
-	for _, c := range f.Prefix {
-		c.tie(root)
+	f.window, f.scalar = textOf(n.Get("window")) == "true", textOf(n.Get("scalar")) == "true"
+	f.types, f.enum, f.required = textsOf(n.Get("type")), textsOf(n.Get("enum")), textsOf(n.Get("required"))
+	f.order, f.named = fieldsFrom(n.Get("properties"), root)
+	_, f.defs = fieldsFrom(n.Get("$defs"), root)
+	f.others, f.items = fieldFrom(n.Get("additionalProperties"), root), fieldFrom(n.Get("items"), root)
+	f.then, f.otherwise = fieldFrom(n.Get("then"), root), fieldFrom(n.Get("else"), root)
+	if p := n.Get("prefixItems"); p != nil {
+		for _, item := range p.Items {
+			f.prefix = append(f.prefix, fieldFrom(item, root))
+		}
 	}
-	for _, c := range []*field{f.Others, f.Items, f.Then, f.Else} {
-		c.tie(root)
+}
+
+// fieldsFrom reads a mapping of schemas and the order of its keys.
+func fieldsFrom(n *Node, root *field) ([]string, map[string]*field) {
+	if n == nil {
+		return nil, nil
 	}
+	order, named := make([]string, len(n.Entries)), make(map[string]*field, len(n.Entries))
+	for i, e := range n.Entries {
+		order[i], named[e.Key] = e.Key, fieldFrom(e.Value, root)
+	}
+	return order, named
+}
+
+func textOf(n *Node) string {
+	if n == nil {
+		return ""
+	}
+	return n.Value
+}
+
+// textsOf are the texts of a list, or the one text that stands in place of a list.
+func textsOf(n *Node) []string {
+	if n == nil {
+		return nil
+	}
+	if n.Kind == Scalar {
+		return []string{n.Value}
+	}
+	texts := make([]string, len(n.Items))
+	for i, item := range n.Items {
+		texts[i] = item.Value
+	}
+	return texts
 }
 
 var (
@@ -157,10 +158,10 @@ func fieldOf(k Kind) *field {
 
 // target is the field that f refers to with $ref, nil if it has none.
 func (f *field) target() *field {
-	if f.Ref == "" {
+	if f.ref == "" {
 		return nil
 	}
-	id, path, _ := strings.Cut(f.Ref, "#")
+	id, path, _ := strings.Cut(f.ref, "#")
 	at := f.root
 	if id == commonID {
 		at = commonField()
@@ -169,8 +170,8 @@ func (f *field) target() *field {
 		if step == "" || step == "$defs" {
 			continue
 		}
-		if at = at.Defs[step]; at == nil {
-			panic("the embedded schema refers to nothing: " + f.Ref) // a test follows every reference
+		if at = at.defs[step]; at == nil {
+			panic("the embedded schema refers to nothing: " + f.ref) // a test follows every reference
 		}
 	}
 	return at
@@ -181,7 +182,7 @@ func (f *field) each(visit func(*field) bool) bool {
 	if f == nil || f.never {
 		return false
 	}
-	return visit(f) || f.target().each(visit) || f.Then.each(visit) || f.Else.each(visit)
+	return visit(f) || f.target().each(visit) || f.then.each(visit) || f.otherwise.each(visit)
 }
 
 // child is the field of a key of the mapping, or of an item of the list, that f describes; nil if it has none.
@@ -189,7 +190,7 @@ func (f *field) child(step string) *field {
 	var found *field
 	hidden := false
 	f.each(func(g *field) bool {
-		if c, ok := g.Keys.named[step]; ok {
+		if c, ok := g.named[step]; ok {
 			if !c.never {
 				found = c
 			}
@@ -204,12 +205,12 @@ func (f *field) child(step string) *field {
 	index, isIndex := itemIndex(step)
 	f.each(func(g *field) bool {
 		switch {
-		case isIndex && index < len(g.Prefix):
-			found = g.Prefix[index]
-		case isIndex && g.Items != nil:
-			found = g.Items
-		case g.Others != nil && !g.Others.never:
-			found = g.Others
+		case isIndex && index < len(g.prefix):
+			found = g.prefix[index]
+		case isIndex && g.items != nil:
+			found = g.items
+		case g.others != nil && !g.others.never:
+			found = g.others
 		}
 		return found != nil
 	})
@@ -221,8 +222,8 @@ func (f *field) keys() []string {
 	var keys []string
 	seen := map[string]bool{}
 	f.each(func(g *field) bool {
-		for _, k := range g.Keys.order {
-			if !seen[k] && !g.Keys.named[k].never {
+		for _, k := range g.order {
+			if !seen[k] && !g.named[k].never {
 				keys = append(keys, k)
 			}
 			seen[k] = true
@@ -243,7 +244,7 @@ func (f *field) first(pick func(*field) string) string {
 }
 
 // open tells a mapping whose keys are free names, as the parts of a library.
-func (f *field) open() bool { return f.Others != nil && !f.Others.never }
+func (f *field) open() bool { return f.others != nil && !f.others.never }
 
 // at is the field at a JSON pointer below f, nil if the schema has none.
 func (f *field) at(pointer string) *field {
@@ -262,12 +263,11 @@ func (f *field) at(pointer string) *field {
 func (f *field) names() []string {
 	var names []string
 	f.each(func(g *field) bool {
-		names = append(names, g.Enum...)
-		var text string
-		if json.Unmarshal(g.Const, &text) == nil && text != "" {
-			names = append(names, text)
+		names = append(names, g.enum...)
+		if g.constant != nil && g.constant.Type == Text {
+			names = append(names, g.constant.Value)
 		}
-		if len(g.Type) == 1 && g.Type[0] == "boolean" {
+		if len(g.types) == 1 && g.types[0] == "boolean" {
 			names = append(names, strconv.FormatBool(true), strconv.FormatBool(false))
 		}
 		return false

@@ -1,8 +1,6 @@
 package schema
 
 import (
-	"bytes"
-	"encoding/json"
 	"slices"
 	"strings"
 )
@@ -29,18 +27,18 @@ func LookupField(k Kind, pointer string) (FieldInfo, bool) {
 	}
 	info := FieldInfo{
 		Pointer:     pointer,
-		Title:       f.first(func(g *field) string { return g.Title }),
-		Description: f.first(func(g *field) string { return g.Description }),
-		Default:     flow(json.RawMessage(f.first(func(g *field) string { return string(g.Default) }))),
+		Title:       f.first(func(g *field) string { return g.title }),
+		Description: f.first(func(g *field) string { return g.description }),
+		Default:     f.first(func(g *field) string { return flow(g.fallback) }),
 		Names:       f.names(),
 		Keys:        f.keys(),
 	}
-	info.Dimension, _ = dimensionNamed(f.first(func(g *field) string { return g.Dimension }))
+	info.Dimension, _ = dimensionNamed(f.first(func(g *field) string { return g.dimension }))
 	f.each(func(g *field) bool {
-		for _, e := range g.Examples {
+		for _, e := range g.examples {
 			info.Examples = append(info.Examples, flow(e))
 		}
-		return len(g.Examples) > 0
+		return len(g.examples) > 0
 	})
 	info.Required = requiredAt(k, pointer)
 	if info.Dimension == 0 {
@@ -69,48 +67,35 @@ func requiredAt(k Kind, pointer string) bool {
 	}
 	key, required := unescapePointer(pointer[cut+1:]), false
 	fieldOf(k).at(pointer[:cut]).each(func(g *field) bool {
-		required = required || slices.Contains(g.Required, key)
+		required = required || slices.Contains(g.required, key)
 		return required
 	})
 	return required
 }
 
-// flow writes a JSON value as YAML flow style writes it: plain texts without quotes.
-func flow(text json.RawMessage) string {
-	if len(text) == 0 {
+// flow writes a value of a schema as YAML flow style writes it: plain texts without quotes.
+func flow(n *Node) string {
+	var parts []string
+	switch {
+	case n == nil:
 		return ""
+	case n.Kind == Mapping:
+		for _, e := range n.Entries {
+			parts = append(parts, e.Key+": "+flow(e.Value))
+		}
+		return "{" + strings.Join(parts, ", ") + "}"
+	case n.Kind == Sequence:
+		for _, item := range n.Items {
+			parts = append(parts, flow(item))
+		}
+		return "[" + strings.Join(parts, ", ") + "]"
+	case n.Type == Text && needsQuotes(n.Value):
+		return `"` + n.Value + `"`
 	}
-	d := json.NewDecoder(bytes.NewReader(text))
-	d.UseNumber()
-	return flowValue(d)
+	return n.Value
 }
 
-func flowValue(d *json.Decoder) string {
-	token, err := d.Token()
-	if err != nil {
-		return ""
-	}
-	switch v := token.(type) {
-	case json.Delim:
-		var parts []string
-		for d.More() {
-			part := flowValue(d)
-			if v == '{' {
-				part += ": " + flowValue(d)
-			}
-			parts = append(parts, part)
-		}
-		end, _ := d.Token()
-		return v.String() + strings.Join(parts, ", ") + end.(json.Delim).String()
-	case string:
-		if v == "" || strings.ContainsAny(v, "#,[]{}\"") || strings.ContainsAny(v[:1], "*&!|>'%@`-?: ") || strings.Contains(v, ": ") {
-			return `"` + v + `"`
-		}
-		return v
-	case json.Number:
-		return v.String()
-	case bool:
-		return map[bool]string{true: "true", false: "false"}[v]
-	}
-	return "null"
+// needsQuotes tells a text that YAML would read as something else in flow style.
+func needsQuotes(text string) bool {
+	return text == "" || strings.ContainsAny(text, "#,[]{}\"") || strings.ContainsAny(text[:1], "*&!|>'%@`-?: ") || strings.Contains(text, ": ")
 }

@@ -15,7 +15,7 @@ func visitFields(f *field, pointer string, visit func(pointer string, f *field))
 	if pointer != "" {
 		visit(pointer, f)
 	}
-	if f.first(func(g *field) string { return g.Dimension }) == "" || f.child("frequency") != nil {
+	if f.first(func(g *field) string { return g.dimension }) == "" || f.child("frequency") != nil {
 		for _, key := range f.keys() {
 			visitFields(f.child(key), pointer+"/"+escapePointer(key), visit)
 		}
@@ -55,7 +55,7 @@ func TestEveryExampleAndDefaultInTheSchemasValidates(t *testing.T) {
 		for _, name := range []string{k.String(), "common"} {
 			var whole any
 			require.NoError(t, json.Unmarshal(schemaText(name), &whole))
-			c := newCompiler(k)
+			c := newCompiler(k, schemaText)
 			_, err := c.Compile(schemaID(k))
 			require.NoError(t, err)
 			eachSchema(whole, "", func(at string, s map[string]any) {

@@ -27,6 +27,7 @@ const (
 	wrongShape  issueKind = "shape"   // a list, a mapping, a truth value where a quantity is expected
 	unknownKey  issueKind = "unknown" // at the mapping; text is the key
 	missingKey  issueKind = "missing" // at the mapping; text is the key
+	notUsed     issueKind = "unused"  // a key that a condition makes useless
 )
 
 // issue is one thing wrong with a quantity, at a path of keys below its field ("", "/tolerance"). Its text continues the

@@ -72,14 +72,14 @@ func quantityOf(n *Node, f *field) (Quantity, bool) {
 func (f *field) quantity() (q quantityField, ok bool) {
 	q.sign = "positive"
 	f.each(func(g *field) bool {
-		if g.Dimension == "" {
+		if g.dimension == "" {
 			return false
 		}
-		q.dim, ok = dimensionNamed(g.Dimension)
-		if g.Sign != "" {
-			q.sign = g.Sign
+		q.dim, ok = dimensionNamed(g.dimension)
+		if g.sign != "" {
+			q.sign = g.sign
 		}
-		q.most, q.window, q.scalar, q.because = g.Most, g.Window, g.Scalar, g.Because
+		q.most, q.window, q.scalar, q.because = g.most, g.window, g.scalar, g.because
 		return true
 	})
 	return q, ok

@@ -80,6 +80,9 @@ func (v *validation) check() {
 	}
 }
 
+// falseSchema is what the validator says of a value under the schema "false".
+const falseSchema = "not allowed"
+
 // leaf is one failed keyword of the schema at one place of the file.
 type leaf struct {
 	at      string // JSON pointer in the validated tree
@@ -113,8 +116,11 @@ func gather(e *jsonschema.ValidationError, leaves *[]leaf) {
 	}
 	path := strings.Split(e.KeywordLocation, "/")
 	l := leaf{at: plainPointer(e.InstanceLocation), keyword: path[len(path)-1], message: e.Message}
-	if len(path) >= 2 && path[len(path)-2] == "properties" {
-		l.keyword, l.below = "properties", path[len(path)-1]
+	if i, ok := unpackIssue(e.Message); ok && i.kind == notUsed {
+		l = leaf{at: l.at + i.path, keyword: "unused"}
+	}
+	if e.Message == falseSchema {
+		l.keyword = "unused"
 	}
 	if len(path) >= 3 && path[len(path)-3] == "dependentRequired" {
 		l.keyword, l.below = "dependentRequired", path[len(path)-2]

@@ -1,17 +1,15 @@
 package schema
 
 import (
-	"bytes"
 	"encoding/json"
 	"fmt"
 	"strings"
-	"sync"
 
 	"github.com/santhosh-tekuri/jsonschema/v5"
 )
 
-// vocabularyMeta describes the project's own keywords, so that a misspelt dimension in a schema does not compile.
-const vocabularyMeta = `{
+// vocabularyText describes the project's own keywords, so that a misspelt dimension in a schema does not compile.
+const vocabularyText = `{
   "$schema": "https://json-schema.org/draft/2020-12/schema",
   "properties": {
     "dimension": {"enum": ["plain", "count", "ratio", "gain", "angle", "decibel", "inductance", "capacitance", "resistance", "transresistance",
@@ -24,10 +22,22 @@ const vocabularyMeta = `{
   "dependentRequired": {"sign": ["dimension"], "most": ["dimension"], "window": ["dimension"], "scalar": ["dimension"], "because": ["dimension"]}
 }`
 
+// vocabularyMeta compiles the description.
+func vocabularyMeta() *jsonschema.Schema {
+	meta, err := jsonschema.CompileString("urn:halfplane:schema:vocabulary", vocabularyText)
+	if err != nil {
+		panic(fmt.Sprintf("compiling the vocabulary: %v", err)) // a test compiles it
+	}
+	return meta
+}
+
 // vocabulary compiles the project's own keywords: quantities with their dimension, and rising lists.
 type vocabulary struct{}
 
 func (vocabulary) Compile(_ jsonschema.CompilerContext, m map[string]any) (jsonschema.ExtSchema, error) {
+	if keys, ok := m["unused"].([]any); ok {
+		return unused(keys), nil
+	}
 	if rising, _ := m["ascending"].(bool); rising {
 		return ascending{}, nil
 	}
@@ -86,6 +96,33 @@ func unpackIssue(message string) (issue, bool) {
 	return issue{issueKind(parts[0]), parts[1], parts[2]}, true
 }
 
+// unused is the keyword for keys that are not allowed where a condition holds. It stands in the lean form only, in place
+// of a schema "false" for each of them.
+type unused []any
+
+func (u unused) Validate(ctx jsonschema.ValidationContext, v any) error {
+	m, ok := v.(map[string]any)
+	if !ok {
+		return nil
+	}
+	var all *jsonschema.ValidationError
+	for _, key := range u {
+		name, _ := key.(string)
+		if _, found := m[name]; !found {
+			continue
+		}
+		one := ctx.Error("unused", "%s", packIssue(issue{notUsed, "/" + name, ""}))
+		if all == nil {
+			all = ctx.Error("unused", "several issues")
+		}
+		all.Causes = append(all.Causes, one)
+	}
+	if all == nil {
+		return nil
+	}
+	return all
+}
+
 // ascending is the keyword for lists of pairs whose first numbers rise.
 type ascending struct{}
 
@@ -111,59 +148,4 @@ func (ascending) Validate(ctx jsonschema.ValidationContext, v any) error {
 		last = q.Nominal
 	}
 	return nil
-}
-
-// newCompiler knows the schema of one kind, the shared definitions and the vocabulary.
-func newCompiler(k Kind) *jsonschema.Compiler {
-	c := jsonschema.NewCompiler()
-	c.AssertFormat = true
-	meta, err := jsonschema.CompileString("urn:halfplane:schema:vocabulary", vocabularyMeta)
-	if err != nil {
-		panic(fmt.Sprintf("compiling the vocabulary: %v", err)) // a test compiles it
-	}
-	c.RegisterExtension("halfplane", meta, vocabulary{})
-	for id, name := range map[string]string{commonID: "common", schemaID(k): k.String()} {
-		if err := c.AddResource(id, bytes.NewReader(schemaText(name))); err != nil {
-			panic(fmt.Sprintf("reading the embedded schema %s: %v", name, err)) // a test compiles them all
-		}
-	}
-	return c
-}
-
-// compile builds the validator of one kind.
-func compile(k Kind) *jsonschema.Schema {
-	compiled, err := newCompiler(k).Compile(schemaID(k))
-	if err != nil {
-		panic(fmt.Sprintf("compiling the embedded schema %s: %v", k, err)) // a test compiles them all
-	}
-	return compiled
-}
-
-func schemaID(k Kind) string { return "urn:halfplane:schema:" + k.String() }
-
-var validators = map[Kind]func() *jsonschema.Schema{
-	Design:      sync.OnceValue(func() *jsonschema.Schema { return compile(Design) }),
-	Compensator: sync.OnceValue(func() *jsonschema.Schema { return compile(Compensator) }),
-	Parts:       sync.OnceValue(func() *jsonschema.Schema { return compile(Parts) }),
-	Policy:      sync.OnceValue(func() *jsonschema.Schema { return compile(Policy) }),
-}
-
-// validatorOf is the compiled schema of a kind, compiled on first use.
-func validatorOf(k Kind) *jsonschema.Schema {
-	if v, ok := validators[k]; ok {
-		return v()
-	}
-	return validators[Design]()
-}
-
-// JSONSchema is the whole JSON Schema (draft 2020-12) of a kind of spec file in one document: the shared definitions are
-// embedded under $defs as a resource of their own, as section 9.3 of the draft's core specification describes. It is nil
-// for an unknown kind.
-func JSONSchema(k Kind) []byte {
-	if _, ok := kindFields[k]; !ok {
-		return nil
-	}
-	reference := []byte(`{"$ref": "` + commonID + `"}`)
-	shared := bytes.ReplaceAll(bytes.TrimSpace(schemaText("common")), []byte("\n"), []byte("\n    "))
-	return bytes.Replace(schemaText(k.String()), reference, shared, 1)
 }
