@@ -7,7 +7,6 @@ import (
 
 	"halfplane/analysis"
 	"halfplane/analysis/network"
-	"halfplane/analysis/transfer"
 )
 
 const gainBandwidthPointer = "/compensator/amplifier/gain-bandwidth"
@@ -42,17 +41,15 @@ var amplifierBandwidth = Rule{
 func statedAmplifier(c *Case) []Finding {
 	limit := c.threshold(amplifierPhase)
 	corner, lag := c.worst(func(k *analysis.Corner) float64 {
-		p := c.point(k.At)
-		return amplifierLag(&p.Network, crossover(k))
+		return amplifierLag(c.parts(k.At), crossover(k))
 	})
 	if corner == nil || lag <= limit {
 		return nil
 	}
 	fc := crossover(corner)
-	p := c.point(corner.At)
 	f := c.atCorner(gainBandwidthPointer, corner)
 	f.Message = fmt.Sprintf("the amplifier costs %s of phase at the crossover %s, limit %s; a gain-bandwidth of %s would just do",
-		number(lag, "deg"), number(fc, "Hz"), number(limit, "deg"), number(sufficientBandwidth(&p.Network, fc, limit), "Hz"))
+		number(lag, "deg"), number(fc, "Hz"), number(limit, "deg"), number(sufficientBandwidth(c.parts(corner.At), fc, limit), "Hz"))
 	f.Formula = fmt.Sprintf("arg(C ideal / C finite) at %s = %s", number(fc, "Hz"), number(lag, "deg"))
 	f.Measured, f.Limit = asNumber(lag, "deg"), asNumber(limit, "deg")
 	f.Nominal = asNumber(amplifierLag(&c.Design.Nominal.Network, crossover(c.nominal())), "deg")
@@ -63,14 +60,10 @@ func statedAmplifier(c *Case) []Finding {
 // at the ideal network's crossovers and then computed with the assumed amplifier in the loop.
 func assumedAmplifier(c *Case) []Finding {
 	limit, assumed := c.threshold(amplifierPhase), c.threshold(assumedBandwidth)
-	withAmplifier := func(k *analysis.Corner) network.Parts {
-		p := c.point(k.At)
-		p.Network.GainBandwidth = assumed
-		return p.Network
-	}
 	corner, _ := c.worst(func(k *analysis.Corner) float64 {
-		parts := withAmplifier(k)
-		return amplifierLag(&parts, crossover(k))
+		parts := c.parts(k.At)
+		parts.GainBandwidth = assumed
+		return amplifierLag(parts, crossover(k))
 	})
 	if corner == nil {
 		return nil
@@ -79,11 +72,10 @@ func assumedAmplifier(c *Case) []Finding {
 	if lag <= limit {
 		return nil
 	}
-	parts := withAmplifier(corner)
 	f := c.atCorner("/compensator/network", corner)
 	f.Severity = Note
 	f.Message = fmt.Sprintf("no amplifier gain-bandwidth is stated: one of %s would cost %s of phase at the crossover %s, limit %s; %s would just do",
-		number(assumed, "Hz"), number(lag, "deg"), number(fc, "Hz"), number(limit, "deg"), number(sufficientBandwidth(&parts, fc, limit), "Hz"))
+		number(assumed, "Hz"), number(lag, "deg"), number(fc, "Hz"), number(limit, "deg"), number(sufficientBandwidth(c.parts(corner.At), fc, limit), "Hz"))
 	f.Formula = fmt.Sprintf("arg(C ideal / C finite) at %s = %s", number(fc, "Hz"), number(lag, "deg"))
 	f.Measured, f.Limit = asNumber(lag, "deg"), asNumber(limit, "deg")
 	nominalLag, _ := lagWith(c, c.nominal(), assumed)
@@ -98,19 +90,36 @@ func lagWith(c *Case, k *analysis.Corner, gainBandwidth float64) (lag, fc float6
 	if err != nil {
 		return math.NaN(), math.NaN()
 	}
-	p := c.point(settings)
 	fc = crossover(&with)
-	return amplifierLag(&p.Network, fc), fc
+	return amplifierLag(c.parts(settings), fc), fc
 }
 
-// amplifierLag is arg(C ideal / C finite) in degrees at a frequency (Hz), NaN where it cannot be computed.
-func amplifierLag(parts *network.Parts, frequency float64) float64 {
-	var ideal, finite transfer.Product
-	if math.IsNaN(frequency) || network.BuildIdeal(parts, &ideal) != nil || network.Build(parts, &finite) != nil {
-		return math.NaN()
+// assumedOpenLoopGain is that of an amplifier of which only the gain-bandwidth is known: 120 dB.
+const assumedOpenLoopGain = 1e6
+
+// amplifierLag is arg(C ideal / C finite) in degrees at a frequency (Hz): the argument of 1 + (1 + Zf/(Zi ∥ RL))/A with
+// 1/A = 1/A0 + jω/ωgb. NaN without a frequency.
+func amplifierLag(p *network.Parts, frequency float64) float64 {
+	s := complex(0, 2*math.Pi*frequency)
+	inverse := complex(1/assumedOpenLoopGain, 0)
+	if p.OpenLoopGain > 0 {
+		inverse = complex(1/p.OpenLoopGain, 0)
 	}
-	omega := 2 * math.Pi * frequency
-	return cmplx.Phase(ideal.At(omega)/finite.At(omega)) * 180 / math.Pi
+	if p.GainBandwidth > 0 {
+		inverse += s / complex(2*math.Pi*p.GainBandwidth, 0)
+	}
+	input := 1 / complex(p.UpperResistor, 0)
+	if p.LeadCapacitor > 0 {
+		input += 1 / (complex(p.LeadResistor, 0) + 1/(s*complex(p.LeadCapacitor, 0)))
+	}
+	if p.LowerResistor > 0 {
+		input += 1 / complex(p.LowerResistor, 0)
+	}
+	feedback := 1 / (complex(p.FeedbackResistor, 0) + 1/(s*complex(p.IntegratorCapacitor, 0)))
+	if p.RolloffCapacitor > 0 {
+		feedback += s * complex(p.RolloffCapacitor, 0)
+	}
+	return cmplx.Phase(1+(1+input/feedback)*inverse) * 180 / math.Pi
 }
 
 // sufficientBandwidth is the gain-bandwidth (Hz) whose lag at a crossover just meets the limit, by bisection over nine decades;

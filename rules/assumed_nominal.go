@@ -19,7 +19,7 @@ var assumedNominal = Rule{
 	Reads:    Declaration,
 	Decide: func(c *Case) []Finding {
 		var findings []Finding
-		c.eachQuantity(func(pointer string, q schema.Quantity) {
+		c.eachBareRange(func(pointer string, q schema.Quantity) {
 			if !q.AssumedNominal || q.Max <= 2*q.Min || isLimit(pointer) {
 				return
 			}
@@ -50,23 +50,24 @@ func isLimit(pointer string) bool {
 	return false
 }
 
-// eachQuantity visits every quantity of the spec in the text's order, shared ones included.
-func (c *Case) eachQuantity(visit func(pointer string, q schema.Quantity)) {
-	c.walk(c.Spec.Root, "", visit)
+// eachBareRange visits every range of the spec that has both ends and no nominal value, in the text's order, shared ones
+// included.
+func (c *Case) eachBareRange(visit func(pointer string, q schema.Quantity)) {
+	c.walk(c.Spec.Root, nil, visit)
 }
 
-func (c *Case) walk(node *schema.Node, pointer string, visit func(string, schema.Quantity)) {
-	if node == nil {
-		return
-	}
-	if q, ok := c.Spec.Quantity(pointer); ok && pointer != "" {
-		visit(pointer, q)
+func (c *Case) walk(node *schema.Node, steps []string, visit func(string, schema.Quantity)) {
+	if node.Get("min") != nil && node.Get("max") != nil && node.Get("nominal") == nil {
+		pointer := "/" + strings.Join(steps, "/")
+		if q, ok := c.Spec.Quantity(pointer); ok {
+			visit(pointer, q)
+		}
 		return
 	}
 	for _, entry := range node.Entries {
-		c.walk(entry.Value, pointer+"/"+strings.NewReplacer("~", "~0", "/", "~1").Replace(entry.Key), visit)
+		c.walk(entry.Value, append(steps, entry.Key), visit)
 	}
 	for i, item := range node.Items {
-		c.walk(item, pointer+"/"+strconv.Itoa(i), visit)
+		c.walk(item, append(steps, strconv.Itoa(i)), visit)
 	}
 }

@@ -67,7 +67,6 @@ func ratedBanks(c *Case) []bankPlace {
 // pieceCurrent is the rms ripple current (A) of one piece of a bank at a corner.
 func pieceCurrent(c *Case, k *analysis.Corner, bank int) float64 {
 	return atReached(k, func() float64 {
-		p := c.point(k.At)
-		return plant.PieceCurrents(&p.Circuit, &k.Plant)[bank]
+		return plant.PieceCurrents(c.circuit(k.At), &k.Plant)[bank]
 	})
 }

@@ -38,5 +38,5 @@ func Prepare(ctx context.Context, doc *schema.Document, r schema.Resolver, setti
 		}
 		return nil, nil, &Fault{What: "analysing: " + err.Error(), Place: "analysis"}
 	}
-	return &Case{Spec: spec, Design: design, Result: result, Settings: settings}, nil, nil
+	return &Case{Spec: spec, Design: design, Result: result, Settings: settings, stages: distinctStages(result)}, nil, nil
 }

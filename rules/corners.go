@@ -7,6 +7,7 @@ import (
 	"strings"
 
 	"halfplane/analysis"
+	"halfplane/analysis/network"
 	"halfplane/analysis/plant"
 )
 
@@ -14,36 +15,60 @@ import (
 // has a score. Of corners that are equal but for rounding the first in the analysis' order counts: nominal before operating
 // before refined.
 func (c *Case) worst(score func(*analysis.Corner) float64) (*analysis.Corner, float64) {
-	var found *analysis.Corner
-	highest := math.Inf(-1)
+	var r race
 	for i := range c.Result.Corners {
-		corner := &c.Result.Corners[i]
-		if s := score(corner); s > highest && (found == nil || s-highest > 1e-9*math.Abs(highest)) {
-			found, highest = corner, s
-		}
+		r.enter(&c.Result.Corners[i], score(&c.Result.Corners[i]))
 	}
-	return found, highest
+	return r.leader, r.score
 }
 
 // worstStage is worst for a score that the compensator has no part in: of corners that differ in compensator parts only, the
 // first is scored.
 func (c *Case) worstStage(score func(*analysis.Corner) float64) (*analysis.Corner, float64) {
+	stages := c.stages
+	if stages == nil {
+		stages = distinctStages(c.Result)
+	}
+	var r race
+	for _, i := range stages {
+		r.enter(&c.Result.Corners[i], score(&c.Result.Corners[i]))
+	}
+	return r.leader, r.score
+}
+
+// race keeps the corner with the highest score so far.
+type race struct {
+	leader *analysis.Corner
+	score  float64
+}
+
+func (r *race) enter(corner *analysis.Corner, score float64) {
+	if r.leader == nil && !math.IsNaN(score) || score-r.score > 1e-9*math.Abs(r.score) {
+		r.leader, r.score = corner, score
+	}
+}
+
+// distinctStages lists the corners (by index) whose power stage is not that of an earlier corner.
+func distinctStages(result *analysis.Result) []int {
 	seen := make(map[string]bool)
+	var distinct []int
 	var key []byte
-	return c.worst(func(k *analysis.Corner) float64 {
+	for i := range result.Corners {
 		key = key[:0]
-		for _, s := range k.At {
-			if !strings.HasPrefix(s.Path, "compensator.") {
+		for _, s := range result.Corners[i].At {
+			if !onCompensator(s.Path) {
 				key = binary.LittleEndian.AppendUint64(key, math.Float64bits(s.Value))
 			}
 		}
-		if seen[string(key)] {
-			return math.NaN()
+		if !seen[string(key)] {
+			seen[string(key)] = true
+			distinct = append(distinct, i)
 		}
-		seen[string(key)] = true
-		return score(k)
-	})
+	}
+	return distinct
 }
+
+func onCompensator(path string) bool { return strings.HasPrefix(path, "compensator.") }
 
 // nominal is the corner at nominal input, load and parts.
 func (c *Case) nominal() *analysis.Corner { return &c.Result.Corners[0] }
@@ -85,18 +110,35 @@ func (c *Case) valueAt(corner *analysis.Corner, path string) float64 {
 	return c.axis(path).Nominal
 }
 
-// point is every number of the design at a corner.
-func (c *Case) point(settings []analysis.Setting) analysis.Point {
-	p := c.Design.Nominal
+// circuit is the power stage and modulator at a corner.
+func (c *Case) circuit(settings []analysis.Setting) *plant.Circuit {
+	p := analysis.Point{Circuit: c.Design.Nominal.Circuit}
 	p.Circuit.Banks = slices.Clone(p.Circuit.Banks)
+	for _, s := range settings {
+		if !onCompensator(s.Path) {
+			assign(&p, s)
+		}
+	}
+	return &p.Circuit
+}
+
+// parts is the compensator at a corner.
+func (c *Case) parts(settings []analysis.Setting) *network.Parts {
+	p := analysis.Point{Network: c.Design.Nominal.Network}
 	p.Network.Zeros, p.Network.Poles = slices.Clone(p.Network.Zeros), slices.Clone(p.Network.Poles)
 	p.Network.Numerator, p.Network.Denominator = slices.Clone(p.Network.Numerator), slices.Clone(p.Network.Denominator)
 	for _, s := range settings {
-		if field := analysis.Field(&p, s.Path); field != nil {
-			*field = s.Value
+		if onCompensator(s.Path) {
+			assign(&p, s)
 		}
 	}
-	return p
+	return &p.Network
+}
+
+func assign(p *analysis.Point, s analysis.Setting) {
+	if field := analysis.Field(p, s.Path); field != nil {
+		*field = s.Value
+	}
 }
 
 // sameCorner says whether two assignments are the same.

@@ -47,8 +47,7 @@ func unmodelledWords(c *Case, corners []*analysis.Corner) string {
 
 // boundary is the load at which a corner leaves continuous conduction (A), NaN where it never does.
 func (c *Case) boundary(corner *analysis.Corner) float64 {
-	p := c.point(corner.At)
-	return plant.CriticalCurrent(&p.Circuit)
+	return plant.CriticalCurrent(c.circuit(corner.At))
 }
 
 // whereWords says at which inputs, and below which loads when a limit is known, corners lie: "below 0.272 A at 12.0 V in".

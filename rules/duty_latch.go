@@ -46,6 +46,5 @@ func dutyPeak(c *Case, k *analysis.Corner) float64 {
 	if k.DutyPeak > 0 && !math.IsNaN(k.DutyPeak) {
 		return k.DutyPeak
 	}
-	p := c.point(k.At)
-	return plant.DutyPeak(&p.Circuit)
+	return plant.DutyPeak(c.circuit(k.At))
 }

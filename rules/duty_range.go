@@ -22,7 +22,7 @@ var dutyRange = Rule{
 			return []Finding{f}
 		}
 		low, high := dutyLimits(c)
-		corner, excess := c.worst(func(k *analysis.Corner) float64 {
+		corner, excess := c.worstStage(func(k *analysis.Corner) float64 {
 			if !k.Reached {
 				return math.NaN()
 			}

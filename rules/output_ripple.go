@@ -24,8 +24,7 @@ var outputRipple = Rule{
 		q, _ := c.Spec.Quantity(outputRippleTarget)
 		ripple := func(k *analysis.Corner) float64 {
 			return atReached(k, func() float64 {
-				p := c.point(k.At)
-				return plant.OutputRipple(&p.Circuit, &k.Plant)
+				return plant.OutputRipple(c.circuit(k.At), &k.Plant)
 			})
 		}
 		corner, volts := c.worstStage(ripple)

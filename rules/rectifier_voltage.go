@@ -8,8 +8,7 @@ import (
 var rectifierBlocks = rating{
 	pointer: "/rectifier/voltage-rating", what: "the rectifier blocks", unit: "V", derate: voltageDerating,
 	of: func(c *Case, k *analysis.Corner) float64 {
-		p := c.point(k.At)
-		return plant.StressOf(&p.Circuit).Rectifier
+		return plant.StressOf(c.circuit(k.At)).Rectifier
 	},
 	decided: []string{"/input-voltage", "/output-voltage", "/turns"},
 }

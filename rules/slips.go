@@ -72,13 +72,13 @@ func coincide(a, b slip) bool {
 // slipsOf lists what can have gone wrong in a figure.
 func slipsOf(c *Case, corner *analysis.Corner, figure statedFigure, got float64) []slip {
 	n := corner.Plant.TurnsRatio
-	circuit := c.point(corner.At).Circuit
+	circuit := c.circuit(corner.At)
 	if circuit.Modulator.Scheme == plant.PeakCurrentMode && strings.HasSuffix(figure.key, "-gain") {
 		figure.ideal = nil // the closed forms are per unit duty, the figure is per control volt
 	}
-	w := workings{circuit: &circuit, figure: figure, got: got, ideal: math.NaN(), mode: corner.Plant.Mode}
+	w := workings{circuit: circuit, figure: figure, got: got, ideal: math.NaN(), mode: corner.Plant.Mode}
 	if figure.ideal != nil {
-		base := plant.IdealOf(&circuit)
+		base := plant.IdealOf(circuit)
 		w.ideal = figure.ideal(&base)
 	}
 	switch figure.key {

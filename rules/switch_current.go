@@ -9,8 +9,7 @@ var switchCarries = rating{
 	pointer: "/switch/current-rating", what: "the switch carries a peak of", unit: "A", derate: currentDerating,
 	of: func(c *Case, k *analysis.Corner) float64 {
 		return atReached(k, func() float64 {
-			p := c.point(k.At)
-			return plant.SwitchPeak(&p.Circuit, &k.Plant)
+			return plant.SwitchPeak(c.circuit(k.At), &k.Plant)
 		})
 	},
 	decided: []string{"/load/current", "/input-voltage", "/inductor/inductance", "/turns"},

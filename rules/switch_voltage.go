@@ -8,8 +8,7 @@ import (
 var switchBlocks = rating{
 	pointer: "/switch/voltage-rating", what: "the switch blocks", unit: "V", derate: voltageDerating,
 	of: func(c *Case, k *analysis.Corner) float64 {
-		p := c.point(k.At)
-		return plant.StressOf(&p.Circuit).Switch
+		return plant.StressOf(c.circuit(k.At)).Switch
 	},
 	decided: []string{"/input-voltage", "/output-voltage", "/turns"},
 }
