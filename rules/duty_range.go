@@ -5,6 +5,7 @@ import (
 	"math"
 
 	"halfplane/analysis"
+	"halfplane/analysis/plant"
 )
 
 var dutyRange = Rule{
@@ -66,16 +67,26 @@ func unreached(c *Case) (Finding, bool) {
 	if corner == nil {
 		return Finding{}, false
 	}
-	volts := c.Design.Nominal.Circuit.OutputVoltage
 	f := c.atCorner(dutyLimit(c), corner)
-	f.Message = fmt.Sprintf("no duty reaches the output voltage %s: the losses leave less at every duty", number(volts, "V"))
-	f.Formula = fmt.Sprintf("vo(D) < %s for every D between 0 and 1", number(volts, "V"))
+	f.Message, f.Formula = unreachedWords(c.circuit(corner.At))
 	if c.nominal().Reached {
 		f.Nominal = asNumber(c.nominal().Plant.Duty, "")
 	}
 	c.relate(&f, "sets the duty", "/output-voltage", "/input-voltage", "/load/current", "/turns")
 	c.relate(&f, "takes part of the voltage", "/inductor/resistance", "/switch/on-resistance", "/rectifier/forward-drop", "/rectifier/resistance")
 	return f, true
+}
+
+// unreachedWords says why no duty reaches the output voltage: a boost-like stage cannot step down; any other has losses that
+// eat too much.
+func unreachedWords(circuit *plant.Circuit) (message, formula string) {
+	volts := number(circuit.OutputVoltage, "V")
+	message, formula = "no duty reaches the output voltage "+volts, "vo(D) < "+volts+" for every D between 0 and 1"
+	if stage := plant.Reflect(circuit); stage.Family == plant.BoostLike && stage.Drive*stage.Input >= stage.Output {
+		driven := number(stage.Drive*stage.Input, "V")
+		return fmt.Sprintf("%s: a %s gives no less than its input, %s on the output side", message, circuit.Topology, driven), volts + " < " + driven
+	}
+	return message + ": the losses leave less at every duty", formula
 }
 
 // dutyLimits are the modulator's lowest and highest duty: 0 and 1 unless stated; a plain number is the upper limit.
