@@ -88,8 +88,7 @@ func TestPanicInsideARuleIsReportedAndTheRestStillRuns(t *testing.T) {
 	out := decide(c, broken)
 	assert.Equal(t, NotAssessed, out.Status)
 	assert.Contains(t, out.Panic, "nil pointer")
-	assert.Contains(t, out.Panic, "place.go:", "the line where it arose")
-	assert.NotContains(t, out.Panic, "/work", "no folder of this machine")
+	assert.Regexp(t, `\(rules/[a-z]+\.go:\d+\)$`, out.Panic, "the line where it arose, without the machine's folders")
 
 	// Through Run: a case whose analysis is missing makes every rule that reads corners fail; each says so, none stops the others.
 	hollow := &Case{Spec: c.Spec, Design: c.Design, Result: &analysis.Result{}}
