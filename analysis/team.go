@@ -2,7 +2,9 @@ package analysis
 
 import (
 	"context"
+	"fmt"
 	"runtime"
+	"runtime/debug"
 	"sync"
 	"sync/atomic"
 )
@@ -64,9 +66,22 @@ func (t *team) run(units int, do func(w *worker, unit int) error) error {
 	return nil
 }
 
-func (t *team) one(w *worker, unit int, do func(*worker, int) error) error {
+func (t *team) one(w *worker, unit int, do func(*worker, int) error) (err error) {
+	defer func() {
+		if cause := recover(); cause != nil {
+			err = &Fault{Cause: cause, Stack: debug.Stack()}
+		}
+	}()
 	if err := t.ctx.Err(); err != nil {
 		return err
 	}
 	return do(w, unit)
 }
+
+// Fault is a defect of the program: a panic inside an analysis, carried from the goroutine that it happened in.
+type Fault struct {
+	Cause any
+	Stack []byte
+}
+
+func (f *Fault) Error() string { return fmt.Sprint(f.Cause) }

@@ -2,7 +2,6 @@ package workspace
 
 import (
 	"context"
-	"errors"
 	"fmt"
 	"path/filepath"
 	"slices"
@@ -57,9 +56,6 @@ func (w *Workspace) CheckDocument(ctx context.Context, doc *schema.Document, o O
 	case len(problems) > 0:
 		f.Status = Unreadable
 		f.Findings = rules.FromProblems(problems)
-	case beyond(err):
-		f.Status = Unreadable
-		f.Findings = rules.FromProblems([]schema.Problem{outOfRange(doc)})
 	case err != nil && ctx.Err() == nil:
 		f.fails(doc, err.Error())
 	case c != nil:
@@ -70,23 +66,6 @@ func (w *Workspace) CheckDocument(ctx context.Context, doc *schema.Document, o O
 		}
 	}
 	return f
-}
-
-// beyond tells numbers that no model holds for, however well they are written, from a defect of the program.
-func beyond(err error) bool {
-	var fault *rules.Fault
-	return errors.As(err, &fault) && fault.Place == "analysis"
-}
-
-// outOfRange is the problem of a design whose numbers lie beyond everything that can be computed; which of them it is
-// cannot be told, so it stands at the file's first key.
-func outOfRange(doc *schema.Document) schema.Problem {
-	p := schema.Problem{Rule: "quantity", Doc: doc}
-	if doc.Root != nil && len(doc.Root.Entries) > 0 {
-		p.Start, p.End = doc.Root.Entries[0].KeyStart, doc.Root.Entries[0].KeyEnd
-	}
-	p.Message = "some number of this design is so large or so small that no loop can be computed from it: check exponents and units"
-	return p
 }
 
 // always keeps a choice of rules from hiding that one of them failed inside the program.

@@ -169,3 +169,19 @@ func TestUnreachableOutputIsAnError(t *testing.T) {
 	assert.NotErrorIs(t, err, ErrUnreachable)
 	assert.Contains(t, err.Error(), "load current")
 }
+
+// TestBoostGivesNoLessThanItsInput: the only duty that solves the averaged equations then lies beyond the peak of the conversion
+// ratio, and is no operating point (theory of the boost converter: M = 1/(1 − D) >= 1).
+func TestBoostGivesNoLessThanItsInput(t *testing.T) {
+	for _, volts := range []float64{4, 8, 8.9} {
+		c := Circuit{
+			Topology: Boost, Phases: 1, SwitchingFrequency: 250e3, InputVoltage: 9, OutputVoltage: volts, LoadCurrent: 1, Behaviour: Resistive,
+			TurnsPrimary: 1, TurnsSecondary: 1, Inductor: Winding{Inductance: 22e-6, Resistance: 0.025}, Synchronous: true,
+			Banks:            []Bank{{Capacitance: 100e-6, ESR: 0.01, Count: 1}},
+			SwitchResistance: 0.015, RectifierResistance: 0.012,
+			Modulator: Modulator{Scheme: VoltageMode, RampAmplitude: 1, ControlRatio: 1},
+		}
+		var out Solution
+		assert.ErrorIs(t, Solve(&c, &out), ErrUnreachable, "%v V", volts)
+	}
+}

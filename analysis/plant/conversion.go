@@ -70,10 +70,15 @@ func (s *Stage) conversionOfTwo(rho, rhoF float64) conversion {
 	return conversion{drive, loss, offOff}
 }
 
-// duty returns the lowest d in (0, 1) with V(d) = volts at the load current amps; NaN when there is none. The upper root, beyond the peak of
-// the conversion ratio, is never the operating point (theory sheet section 13, trap 1).
+// duty returns the lowest d in (0, 1) at which V(d) rises through volts at the load current amps; NaN when there is none. The upper root,
+// beyond the peak of the conversion ratio, is never the operating point (theory sheet section 13, trap 1): a boost that gives
+// more than volts at d = 0 already has that root alone, and no operating point.
 func (c *conversion) duty(volts, amps float64) float64 {
-	return lowestInside(c.drive.plus(-amps, c.loss).plus(-volts, c.divisor))
+	excess := c.drive.plus(-amps, c.loss).plus(-volts, c.divisor)
+	if excess.at(0) >= 0 {
+		return math.NaN()
+	}
+	return lowestInside(excess)
 }
 
 // lowestInside returns the lowest root of the parabola in (0, 1), NaN when there is none.
