@@ -72,7 +72,7 @@ func childField(f *field, step string) *field {
 // spell gives keys that are one edit away from a known key that is not there the right spelling, and notes how they
 // were written.
 func (g *grower) spell(n *Node, f *field) {
-	if f.open() {
+	if f.open() || len(n.Entries) > crowd {
 		return
 	}
 	for i := range n.Entries {

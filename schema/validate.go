@@ -57,11 +57,13 @@ type validation struct {
 	torn  bool
 	seen  map[string]bool // problems that were reported, by place and text
 	spent map[*Node]bool  // values whose key is not used: nothing inside them is worth a word
+	// tables are the keys of large mappings.
+	tables map[*Node]map[string]*Entry
 }
 
 // check runs the compiled schema and words each of its leaves.
 func (v *validation) check() {
-	v.seen, v.spent = map[string]bool{}, map[*Node]bool{}
+	v.seen, v.spent, v.tables = map[string]bool{}, map[*Node]bool{}, map[*Node]map[string]*Entry{}
 	err := validatorOf(v.doc.Kind).Validate(valueOf(v.root, v.resolved))
 	var failed *jsonschema.ValidationError
 	if errors.As(err, &failed) {
@@ -75,8 +77,8 @@ func (v *validation) check() {
 			v.word(l)
 		}
 	}
-	for spot, key := range v.misspelt {
-		v.reportMisspelt(v.root, spot, key)
+	if len(v.misspelt) > 0 {
+		v.reportMisspelt(&site{node: v.root, field: v.field})
 	}
 }
 

@@ -27,7 +27,7 @@ func (v *validation) find(pointer string) *site {
 			pointer = "/" + rest
 		}
 		step = unescapePointer(step)
-		node, entry := s.node.step(step)
+		node, entry := v.step(s.node, step)
 		if node == nil {
 			return nil
 		}
@@ -38,6 +38,29 @@ func (v *validation) find(pointer string) *site {
 		s = next
 	}
 	return s
+}
+
+// crowd is the number of keys above which a mapping is searched by a table, and above which its unknown keys are not
+// compared with the known ones: no spec has such a mapping but a library of parts.
+const crowd = 100
+
+// step goes one level down.
+func (v *validation) step(n *Node, name string) (*Node, *Entry) {
+	if len(n.Entries) < crowd {
+		return n.step(name)
+	}
+	table, ok := v.tables[n]
+	if !ok {
+		table = make(map[string]*Entry, len(n.Entries))
+		for i := range n.Entries {
+			table[n.Entries[i].Key] = &n.Entries[i]
+		}
+		v.tables[n] = table
+	}
+	if e := table[name]; e != nil {
+		return e.Value, e
+	}
+	return nil, nil
 }
 
 // name is what a message calls the place: its key, "item 2 of zeros", "min of input-voltage".
@@ -143,8 +166,10 @@ func (v *validation) onValue(s *site, rule, message string) {
 // unknown reports a key that the schema has not, with the nearest that it has.
 func (v *validation) unknown(s *site, e *Entry) {
 	message := fmt.Sprintf("unknown key '%s'%s", shown(e.Key), within(s))
-	if near := Nearest(e.Key, s.field.keys()); near != "" {
-		message += fmt.Sprintf(": did you mean '%s'?", near)
+	if len(s.node.Entries) < crowd {
+		if near := Nearest(e.Key, s.field.keys()); near != "" {
+			message += fmt.Sprintf(": did you mean '%s'?", near)
+		}
 	}
 	v.onKey(s, e, message)
 }

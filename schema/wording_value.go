@@ -3,6 +3,7 @@ package schema
 import (
 	"fmt"
 	"slices"
+	"strconv"
 	"strings"
 )
 
@@ -15,6 +16,9 @@ func (v *validation) wrongValue(s *site, l leaf) string {
 	case "const":
 		if names := s.field.names(); len(names) > 0 {
 			return fmt.Sprintf("%s expects '%s' or a list, found %s", s.name(), names[0], found)
+		}
+		if s.node.Type == Text && s.node.Value == "1" {
+			return fmt.Sprintf("%s expects the number 1, found the text '1': write it without quotes", s.name())
 		}
 		return fmt.Sprintf("%s expects 1, the only version there is, found %s", s.name(), found)
 	case "format":
@@ -145,13 +149,23 @@ func owner(s *site) string {
 	return s.name()
 }
 
-// reportMisspelt finds the key that was written at a spot and reports it under its right spelling.
-func (v *validation) reportMisspelt(root *Node, at spot, key string) {
-	s := locate(v, &site{node: root, field: v.field}, at)
-	if s == nil {
-		return
+// reportMisspelt walks the tree and reports each key that was put right, under its right spelling.
+func (v *validation) reportMisspelt(s *site) {
+	for i := range s.node.Entries {
+		e := &s.node.Entries[i]
+		next := &site{
+			node: e.Value, entry: e, parent: s.node, field: childField(s.field, e.Key), above: s, step: e.Key,
+			pointer: s.pointer + "/" + escapePointer(v.keyAsWritten(e)),
+		}
+		if key, ok := v.misspelt[spot{e.KeyDoc, e.KeyStart}]; ok {
+			v.onKey(s, e, fmt.Sprintf("unknown key '%s'%s: did you mean '%s'?", shown(key), within(s), e.Key))
+		}
+		v.reportMisspelt(next)
 	}
-	v.onKey(s.above, s.entry, fmt.Sprintf("unknown key '%s'%s: did you mean '%s'?", shown(key), within(s.above), s.step))
+	for i, item := range s.node.Items {
+		step := strconv.Itoa(i)
+		v.reportMisspelt(&site{node: item, parent: s.node, field: childField(s.field, step), above: s, step: step, pointer: s.pointer + "/" + step})
+	}
 }
 
 // within says in which mapping a key stands; nothing at the top level.
@@ -160,29 +174,4 @@ func within(s *site) string {
 		return ""
 	}
 	return " in " + s.name()
-}
-
-// locate searches the tree for the entry at a spot.
-func locate(v *validation, s *site, at spot) *site {
-	for i := range s.node.Entries {
-		e := &s.node.Entries[i]
-		next := &site{
-			node: e.Value, entry: e, parent: s.node, field: childField(s.field, e.Key), above: s, step: e.Key,
-			pointer: s.pointer + "/" + escapePointer(v.keyAsWritten(e)),
-		}
-		if at == (spot{e.KeyDoc, e.KeyStart}) {
-			return next
-		}
-		if found := locate(v, next, at); found != nil {
-			return found
-		}
-	}
-	for i, item := range s.node.Items {
-		step := fmt.Sprint(i)
-		next := &site{node: item, parent: s.node, field: childField(s.field, step), above: s, step: step, pointer: s.pointer + "/" + step}
-		if found := locate(v, next, at); found != nil {
-			return found
-		}
-	}
-	return nil
 }
