@@ -16,7 +16,7 @@ var amplifierBandwidth = Rule{
 	Group:    Loop,
 	Severity: Warning,
 	Sentence: "The error amplifier is fast enough that its own lag at crossover is small.",
-	Formula:  "arg(C ideal / C finite) at fc <= amplifier-phase",
+	Formula:  "arg(C ideal / C finite) at fc ≤ amplifier-phase",
 	Source:   "common practice",
 	Policy:   []Threshold{amplifierPhase, assumedBandwidth},
 	Example:  "compensator: {network: type-3, amplifier: {gain-bandwidth: 300 kHz}, …}   # crosses at 30 kHz",

@@ -13,7 +13,7 @@ var assumedNominal = Rule{
 	Group:    Declared,
 	Severity: Note,
 	Sentence: "A range wider than 2 to 1 states its nominal value, so that nobody has to assume the midpoint.",
-	Formula:  "max <= 2 * min, or nominal is given",
+	Formula:  "max ≤ 2 · min, or nominal is given",
 	Source:   "common practice",
 	Example:  "output-capacitor: {capacitance: 220 uF, esr: {min: 8 mΩ, max: 25 mΩ}}",
 	Reads:    Declaration,
@@ -25,7 +25,7 @@ var assumedNominal = Rule{
 			}
 			f := c.at(pointer)
 			f.Message = fmt.Sprintf("%s runs from %s to %s without a nominal value; the midpoint, %s, is assumed",
-				spaced(lastKey(pointer)), number(q.Min, q.Unit), number(q.Max, q.Unit), number(q.Nominal, q.Unit))
+				placeWords(pointer), number(q.Min, q.Unit), number(q.Max, q.Unit), number(q.Nominal, q.Unit))
 			f.Formula = fmt.Sprintf("(%s + %s)/2 = %s", number(q.Min, q.Unit), number(q.Max, q.Unit), number(q.Nominal, q.Unit))
 			f.Nominal = asNumber(q.Nominal, q.Unit)
 			if q.Min > 0 {

@@ -12,7 +12,7 @@ var capacitorRippleCurrent = Rule{
 	Group:    Operating,
 	Severity: Warning,
 	Sentence: "The ripple current of one output capacitor stays within its rating at every corner.",
-	Formula:  "rms of the current into one piece <= ripple-current-rating",
+	Formula:  "√(2·Σ|Ik|²)/count ≤ ripple-current-rating, Ik the harmonics of the current into the bank",
 	Source:   "common practice (Fourier series of the piecewise-linear output current, shared by the banks' admittances)",
 	Example:  "topology: boost\noutput-capacitor: {capacitance: 220 uF, ripple-current-rating: 0.9 A}   # 1.6 A rms at low input",
 	Reads:    Operation,
@@ -28,7 +28,7 @@ var capacitorRippleCurrent = Rule{
 			}
 			f := c.atCorner(pointer, corner)
 			f.Message = fmt.Sprintf("one output capacitor carries %s rms, above its rating of %s", number(amps, "A"), number(q.Min, "A"))
-			f.Formula = fmt.Sprintf("%s <= %s", number(amps, "A"), number(q.Min, "A"))
+			f.Formula = fmt.Sprintf("√(2·Σ|Ik|²)/%s = %s; at most %s", short(c.Design.Nominal.Circuit.Banks[bank.index].Count), number(amps, "A"), number(q.Min, "A"))
 			f.Measured, f.Limit, f.Nominal = asNumber(amps, "A"), asNumber(q.Min, "A"), asNumber(pieceCurrent(c, c.nominal(), bank.index), "A")
 			c.relate(&f, "decides the ripple current", "/load/current", "/input-voltage", bank.pointer+"/count", "/inductor/inductance")
 			findings = append(findings, f)

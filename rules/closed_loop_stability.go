@@ -33,7 +33,7 @@ var closedLoopStability = Rule{
 		if stable := c.nominal().Loop; stable != nil && stable.Stable {
 			f.Message += "; it is stable at nominal"
 		}
-		f.Formula = "1 + T(s) = 0 has a root with Re s >= 0"
+		f.Formula = "1 + T(s) = 0 has a root with Re s ≥ 0"
 		f.Measured, f.Limit = asNumber(corner.Loop.PhaseMargin, "deg"), asNumber(0, "deg")
 		if nominal := c.nominal().Loop; nominal != nil {
 			f.Nominal = asNumber(nominal.PhaseMargin, "deg")

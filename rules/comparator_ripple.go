@@ -14,7 +14,7 @@ var comparatorRipple = Rule{
 	Group:    Loop,
 	Severity: Warning,
 	Sentence: "The output ripple that the compensator passes to the comparator does not eat the phase margin that the averaged model promises.",
-	Formula:  "not both: margin with ripple < averaged margin - limit, and margin with ripple < target - limit; error when only the loop with ripple is unstable",
+	Formula:  "not both: margin with ripple < averaged margin − limit, and margin with ripple < target − limit; error when only the loop with ripple is unstable",
 	Source:   "A. R. Brown, R. D. Middlebrook, \"Sampled-data modeling of switching regulators\", IEEE PESC (1981), on why ripple matters; first-order term checked against exact switched waveforms",
 	Policy:   []Threshold{comparatorRippleDeg},
 	Example:  "topology: boost\noutput-capacitor: {capacitance: 220 uF, esr: 33 mΩ}\ncompensator: {network: type-3, lead-resistor: 1k, lead-capacitor: 1n, …}",
@@ -51,7 +51,7 @@ var comparatorRipple = Rule{
 			f.Message = fmt.Sprintf("the averaged phase margin is %s, but with the output ripple at the comparator the loop is unstable (phase margin %s, target %s)",
 				number(averaged, "deg"), number(with, "deg"), number(target, "deg"))
 		}
-		f.Formula = fmt.Sprintf("%s - (%s) = %s lost; %s - %s = %s allowed", number(averaged, "deg"), number(with, "deg"), number(averaged-with, "deg"),
+		f.Formula = fmt.Sprintf("lost: %s − %s = %s, at most %s; left: %s, at least %s − %s = %s", number(averaged, "deg"), bracketed(with, "deg"), number(averaged-with, "deg"), number(limit, "deg"), number(with, "deg"),
 			number(target, "deg"), number(limit, "deg"), number(target-limit, "deg"))
 		f.Measured, f.Limit = asNumber(with, "deg"), asNumber(target-limit, "deg")
 		if k := c.nominal(); hasRipple(k) {

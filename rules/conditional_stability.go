@@ -12,10 +12,10 @@ var conditionalStability = Rule{
 	Group:    Loop,
 	Severity: Warning,
 	Sentence: "A loop that is lost by less gain (a saturated or starting amplifier) has a good margin against that.",
-	Formula:  "20 log10 |T| where T is real, negative and larger than one >= gain-reduction-margin; a loop without such a frequency holds",
+	Formula:  "20·log10 |T| where T is real, negative and larger than one ≥ gain-reduction-margin; a loop without such a frequency holds",
 	Source:   "H. Nyquist, \"Regeneration theory\", Bell System Technical Journal 11 (1932); 10 dB is common practice",
 	Policy:   []Threshold{reductionMargin},
-	Example:  "compensator: {network: type-3, …}   # both zeros above the resonance: the phase passes -180° below crossover",
+	Example:  "compensator: {network: type-3, …}   # both zeros above the resonance: the phase passes −180° below crossover",
 	Reads:    Figures,
 	Place:    gainPart,
 	Decide: func(c *Case) []Finding {
@@ -36,7 +36,7 @@ var conditionalStability = Rule{
 			f.Message = fmt.Sprintf("the plant has %s on its own and only the loop holds it: it is lost by %s less gain, limit %s",
 				poles(n), number(-negative, "dB"), number(limit, "dB"))
 		}
-		f.Formula = fmt.Sprintf("20 log10(%s) = %s", short(math.Pow(10, -negative/20)), number(-negative, "dB"))
+		f.Formula = fmt.Sprintf("20·log10(%s) = %s", short(math.Pow(10, -negative/20)), number(-negative, "dB"))
 		f.Measured, f.Limit, f.Nominal = asNumber(-negative, "dB"), asNumber(limit, "dB"), asNumber(margin(c.nominal()), "dB")
 		if c.unstable() != nil {
 			// A loop that is lost at one corner is near to being lost at its neighbours.

@@ -14,7 +14,7 @@ var crossoverRange = Rule{
 	Group:    Loop,
 	Severity: Warning,
 	Sentence: "Crossover is inside the target range at every corner.",
-	Formula:  "targets.crossover.min <= fc <= targets.crossover.max",
+	Formula:  "targets.crossover.min ≤ fc ≤ targets.crossover.max",
 	Source:   "common practice",
 	Example:  "targets: {crossover: {min: 2 kHz, max: 6 kHz}}   # the corners spread from 1.4 kHz to 5.3 kHz",
 	Reads:    Figures,
@@ -45,7 +45,7 @@ var crossoverRange = Rule{
 			limit = low
 			f.Message = fmt.Sprintf("crossover %s is below the target range's lower end, %s", number(fc, "Hz"), number(low, "Hz"))
 		}
-		f.Formula = fmt.Sprintf("%s <= fc <= %s; fc = %s", number(low, "Hz"), number(high, "Hz"), number(fc, "Hz"))
+		f.Formula = fmt.Sprintf("%s ≤ fc ≤ %s; fc = %s", number(low, "Hz"), number(high, "Hz"), number(fc, "Hz"))
 		f.Measured, f.Limit, f.Nominal = asNumber(fc, "Hz"), asNumber(limit, "Hz"), nominalCrossover(c)
 		c.relate(&f, "sets the gain at crossover", gainPart(c))
 		return []Finding{f}

@@ -12,7 +12,7 @@ var crossoverWindow = Rule{
 	Group:    Plant,
 	Severity: Warning,
 	Sentence: "Between the output filter's resonance and the limits above it there is room for a crossover at every corner.",
-	Formula:  "resonance-clearance * f0 <= min(rhp-zero-fraction * fz, switching-fraction * ff)",
+	Formula:  "resonance-clearance · f0 ≤ min(rhp-zero-fraction · fz, switching-fraction · ff)",
 	Source:   "common practice",
 	Policy:   []Threshold{resonanceClearance, rhpZeroFraction, switchingFraction},
 	Example:  "topology: boost\ninductor: {inductance: 220 uH}   # resonance 900 Hz, right-half-plane zero 4 kHz",
@@ -47,7 +47,7 @@ var crossoverWindow = Rule{
 		f.Message = fmt.Sprintf("no room for a crossover above the resonance: %s times %s is %s, above the ceiling %s set by %s; %s or %s times the output capacitance would make room, or a crossover below %s",
 			short(clearance), number(corner.Plant.Resonance, "Hz"), number(floor, "Hz"), number(ceiling, "Hz"), what,
 			inductance, short(ratio*ratio), number(corner.Plant.Resonance/clearance, "Hz"))
-		f.Formula = fmt.Sprintf("%s * %s = %s <= %s", short(clearance), number(corner.Plant.Resonance, "Hz"), number(floor, "Hz"), number(ceiling, "Hz"))
+		f.Formula = fmt.Sprintf("%s · f0 = %s · %s = %s; at most %s", short(clearance), short(clearance), number(corner.Plant.Resonance, "Hz"), number(floor, "Hz"), number(ceiling, "Hz"))
 		f.Measured, f.Limit = asNumber(floor, "Hz"), asNumber(ceiling, "Hz")
 		f.Nominal = asNumber(clearance*c.nominal().Plant.Resonance, "Hz")
 		c.relate(&f, "decides the window", "/inductor/inductance", "/output-capacitor/capacitance", "/output-capacitors", "/switching-frequency", "/input-voltage", "/load/current")

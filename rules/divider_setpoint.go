@@ -13,7 +13,7 @@ var dividerSetpoint = Rule{
 	Group:    Declared,
 	Severity: Error,
 	Sentence: "The divider and the reference set the output voltage that the file states.",
-	Formula:  "|Vref * (1 + R1/RL) - |V|| <= setpoint-tolerance * |V|, with nominal parts",
+	Formula:  "|Vref · (1 + R1/RL) − |V|| ≤ setpoint-tolerance · |V|, with nominal parts",
 	Source:   "common practice",
 	Policy:   []Threshold{setpointTolerance},
 	Example:  "output-voltage: 24 V\ncompensator: {reference-voltage: 1.25 V, upper-resistor: 100k, lower-resistor: 5k94, …}   # sets 22.3 V",
@@ -33,7 +33,7 @@ var dividerSetpoint = Rule{
 		f := c.at("/compensator/lower-resistor")
 		f.Message = fmt.Sprintf("the divider sets %s, %s off the output voltage %s (limit %s); over the parts' tolerances it sets %s to %s",
 			number(set, "V"), percent(math.Abs(set-volts)/volts), number(volts, "V"), percent(tolerance), number(low, "V"), number(high, "V"))
-		f.Formula = fmt.Sprintf("Vref * (1 + R1/RL) = %s * (1 + %s/%s) = %s", number(parts.ReferenceVoltage, "V"),
+		f.Formula = fmt.Sprintf("Vref · (1 + R1/RL) = %s · (1 + %s/%s) = %s", number(parts.ReferenceVoltage, "V"),
 			number(parts.UpperResistor, "Ω"), number(parts.LowerResistor, "Ω"), number(set, "V"))
 		limit := volts * (1 + math.Copysign(tolerance, set-volts))
 		f.Measured, f.Limit, f.Nominal = asNumber(set, "V"), asNumber(limit, "V"), asNumber(set, "V")

@@ -34,7 +34,7 @@ var dutyLatch = Rule{
 			f.Message = fmt.Sprintf("no upper duty limit is stated, and the output voltage peaks at a duty of %s: beyond it more duty means less output and a saturated loop stays at its stop",
 				number(peak, ""))
 		}
-		f.Formula = fmt.Sprintf("duty-limit.max < %s; it is %s", number(peak, ""), short(high))
+		f.Formula = fmt.Sprintf("duty-limit.max < D at the peak of vo(D) = %s; it is %s", number(peak, ""), short(high))
 		f.Measured, f.Limit, f.Nominal = asNumber(high, ""), asNumber(peak, ""), asNumber(dutyPeak(c, c.nominal()), "")
 		c.relate(&f, "moves the peak", "/input-voltage", "/load/current", "/inductor/resistance", "/switch/on-resistance", "/rectifier/resistance")
 		return []Finding{f}

@@ -13,7 +13,7 @@ var dutyRange = Rule{
 	Group:    Operating,
 	Severity: Error,
 	Sentence: "The duty that regulation needs exists and lies inside the duty limits at every corner, losses included.",
-	Formula:  "duty-limit.min <= D <= duty-limit.max, with vo(D) = V",
+	Formula:  "duty-limit.min ≤ D ≤ duty-limit.max, with vo(D) = V",
 	Source:   "R. D. Middlebrook, S. Ćuk, \"A general unified approach to modelling switching-converter power stages\", IEEE PESC (1976), for D with losses",
 	Example:  "modulator: {scheme: voltage-mode, ramp-amplitude: 1.8 V, duty-limit: {min: 0, max: 0.6}}   # 0.64 is needed at low input",
 	Reads:    Operation,
@@ -38,7 +38,7 @@ var dutyRange = Rule{
 		}
 		f := c.atCorner(dutyLimit(c), corner)
 		f.Message = fmt.Sprintf("the duty that is needed, %s, is %s duty limit, %s", number(duty, ""), side, number(limit, ""))
-		f.Formula = fmt.Sprintf("%s <= D <= %s; D = %s", short(low), short(high), number(duty, ""))
+		f.Formula = fmt.Sprintf("%s ≤ D ≤ %s; D = %s, without losses %s", short(low), short(high), number(duty, ""), number(plant.IdealOf(c.circuit(corner.At)).Duty, ""))
 		f.Measured, f.Limit = asNumber(duty, ""), asNumber(limit, "")
 		if c.nominal().Reached {
 			f.Nominal = asNumber(c.nominal().Plant.Duty, "")

@@ -15,7 +15,7 @@ var esrZeroSpread = Rule{
 	Group:    Plant,
 	Severity: Note,
 	Sentence: "An output-capacitor zero that a compensator pole is meant to cancel stays near that pole over its spread.",
-	Formula:  "pole / esr-spread <= 1/(2 pi * ESR * C) <= pole * esr-spread, where the nominal zero lies below 5 * fc",
+	Formula:  "pole / esr-spread ≤ 1/(2π · ESR · C) ≤ pole · esr-spread, where the nominal zero lies below 5 · fc",
 	Source:   "common practice",
 	Policy:   []Threshold{esrSpread},
 	Example:  "output-capacitor: {capacitance: 220 uF, esr: {min: 8 mΩ, nominal: 40 mΩ, max: 160 mΩ}}",
@@ -42,9 +42,9 @@ var esrZeroSpread = Rule{
 		if worst < pole {
 			limit = pole / factor
 		}
-		f.Message = fmt.Sprintf("the output capacitor's zero spreads from %s to %s; the compensator's pole at %s covers it within a factor of %s only (limit %s)",
-			number(low, "Hz"), number(high, "Hz"), number(pole, "Hz"), short(factor), number(limit, "Hz"))
-		f.Formula = fmt.Sprintf("%s / %s = %s", number(math.Max(worst, pole), "Hz"), number(math.Min(worst, pole), "Hz"), short(distance(worst, pole)))
+		f.Message = fmt.Sprintf("the output capacitor's ESR zero spreads from %s to %s, further than a factor of %s from the compensator's pole at %s (limit %s)",
+			number(low, "Hz"), number(high, "Hz"), short(factor), number(pole, "Hz"), number(limit, "Hz"))
+		f.Formula = fmt.Sprintf("%s / %s = %s; at most %s", number(math.Max(worst, pole), "Hz"), number(math.Min(worst, pole), "Hz"), short(distance(worst, pole)), short(factor))
 		f.Measured, f.Limit, f.Nominal = asNumber(worst, "Hz"), asNumber(limit, "Hz"), asNumber(zero, "Hz")
 		c.relate(&f, "decides the zero", bank.pointer+"/capacitance")
 		c.relate(&f, "sets the pole", "/compensator/rolloff-capacitor", "/compensator/lead-resistor", "/compensator/poles")

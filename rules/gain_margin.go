@@ -12,7 +12,7 @@ var gainMargin = Rule{
 	Group:    Loop,
 	Severity: Error,
 	Sentence: "The smallest gain margin over all corners meets the target.",
-	Formula:  "-20 log10 |T| where T is real and negative >= target; a loop without such a frequency holds",
+	Formula:  "−20·log10 |T| where T is real and negative ≥ target; a loop without such a frequency holds",
 	Source:   "H. Nyquist, \"Regeneration theory\", Bell System Technical Journal 11 (1932); 8 dB is common practice",
 	Policy:   []Threshold{gainMarginLimit},
 	Example:  "targets: {gain-margin: 12 dB}   # the loop has 9 dB",
@@ -25,7 +25,7 @@ var gainMargin = Rule{
 		},
 		sum: func(k *analysis.Corner) string {
 			g := math.Pow(10, -k.Loop.GainMargin/20)
-			return fmt.Sprintf("-20 log10(%s) = %s", short(g), number(k.Loop.GainMargin, "dB"))
+			return fmt.Sprintf("−20·log10 |T| at %s = −20·log10(%s) = %s", number(k.Loop.GainMarginFrequency, "Hz"), short(g), number(k.Loop.GainMargin, "dB"))
 		},
 	}.decide,
 }

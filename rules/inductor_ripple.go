@@ -9,7 +9,7 @@ var inductorRipple = Rule{
 	Group:    Operating,
 	Severity: Note,
 	Sentence: "At nominal input and full load the inductor's ripple is a usual part of its average current.",
-	Formula:  "ripple-band.min <= peak-to-peak ripple / average of one phase <= ripple-band.max",
+	Formula:  "ripple-band.min ≤ peak-to-peak ripple / average of one phase ≤ ripple-band.max",
 	Source:   "common practice",
 	Policy:   []Threshold{rippleBandLow, rippleBandHigh},
 	Example:  "inductor: {inductance: 470 uH}   # ripple 3 % of the average: large, slow, and a small current signal",

@@ -12,7 +12,7 @@ var inductorSaturation = Rule{
 	Group:    Operating,
 	Severity: Error,
 	Sentence: "The inductor's peak current stays clear of its lowest saturation current at every corner, on the winding's own side.",
-	Formula:  "average + ripple/2 of one winding <= (1 - saturation-headroom) * lowest saturation current",
+	Formula:  "average + ripple/2 of one winding ≤ (1 − saturation-headroom) · lowest saturation-current",
 	Source:   "common practice",
 	Policy:   []Threshold{saturationHeadroom},
 	Example:  "inductor: {inductance: 22 uH ± 20 %, saturation-current: 5 A}   # 4.9 A at low input and full load",
@@ -44,7 +44,7 @@ func saturation(c *Case, winding string, lowest float64) []Finding {
 	if peak > lowest {
 		f.Message = fmt.Sprintf("the inductor's peak current %s is above its saturation current %s (limit %s)", number(peak, "A"), number(lowest, "A"), number(limit, "A"))
 	}
-	f.Formula = fmt.Sprintf("%s <= (1 - %s) * %s = %s", peakFormula(c, corner, winding, peak), short(c.threshold(saturationHeadroom)), number(lowest, "A"), number(limit, "A"))
+	f.Formula = fmt.Sprintf("Ipk ≤ (1 − %s) · %s = %s; Ipk = %s", short(c.threshold(saturationHeadroom)), number(lowest, "A"), number(limit, "A"), peakFormula(c, corner, winding, peak))
 	f.Measured, f.Limit, f.Nominal = asNumber(peak, "A"), asNumber(limit, "A"), asNumber(windingPeak(c, c.nominal(), winding), "A")
 	c.relate(&f, "decides the peak current", "/load/current", "/input-voltage", winding+"/inductance", "/turns", "/phases")
 	return []Finding{f}
@@ -61,7 +61,7 @@ func peakFormula(c *Case, k *analysis.Corner, winding string, peak float64) stri
 		sum = "ripple " + number(ripple, "A")
 	}
 	if circuit := &c.Design.Nominal.Circuit; circuit.Topology.Isolated() && circuit.InductorOnPrimary {
-		sum = fmt.Sprintf("(%s) * %s", sum, number(k.Plant.TurnsRatio, ""))
+		sum = fmt.Sprintf("(%s) · %s", sum, number(k.Plant.TurnsRatio, ""))
 	}
 	return sum + " = " + number(peak, "A")
 }

@@ -36,7 +36,7 @@ var inputFilter = Rule{
 			which = "ZD"
 		}
 		f.Message = fmt.Sprintf("the input filter's output impedance reaches %s times the converter's %s, limit %s", number(ratio, ""), which, number(limit, ""))
-		f.Formula = fmt.Sprintf("max |Zo/%s| = %s < %s", which, short(ratio), short(limit))
+		f.Formula = fmt.Sprintf("max |Zo/%s| < %s; it is %s", which, short(limit), short(ratio))
 		f.Measured, f.Limit, f.Nominal = asNumber(ratio, ""), asNumber(limit, ""), asNumber(impedance(c.nominal()), "")
 		if harm != "" {
 			f.Severity = Error

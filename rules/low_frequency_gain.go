@@ -11,7 +11,7 @@ var lowFrequencyGain = Rule{
 	Group:    Loop,
 	Severity: Warning,
 	Sentence: "The loop's direct-current gain is high enough to hold the set-point, and the loop crosses one somewhere.",
-	Formula:  "1/(1 + |T(0)|) <= dc-error; a pole at zero counts as 0",
+	Formula:  "1/(1 + |T(0)|) ≤ dc-error; a pole at zero counts as 0",
 	Source:   "common practice",
 	Policy:   []Threshold{dcError},
 	Example:  "compensator: {network: transfer-function, gain: 3, poles: [2 kHz]}   # no integrator",
@@ -29,7 +29,7 @@ var lowFrequencyGain = Rule{
 			f.Message = fmt.Sprintf("the loop gain never reaches one: the output is not regulated (direct-current gain %s, error %s, limit %s)",
 				number(corner.Loop.DCGain, ""), percent(dcErrorOf(corner)), percent(limit))
 		}
-		f.Formula = fmt.Sprintf("1/(1 + %s) = %s", short(corner.Loop.DCGain), percent(dcErrorOf(corner)))
+		f.Formula = fmt.Sprintf("1/(1 + |T(0)|) = 1/(1 + %s) = %s; at most %s", short(corner.Loop.DCGain), percent(dcErrorOf(corner)), percent(limit))
 		f.Measured, f.Limit, f.Nominal = asNumber(dcErrorOf(corner), ""), asNumber(limit, ""), asNumber(dcErrorOf(c.nominal()), "")
 		c.relate(&f, "decides the direct-current gain", "/compensator/amplifier/open-loop-gain", "/compensator/output-resistance", "/compensator/transconductance")
 		return []Finding{f}

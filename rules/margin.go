@@ -21,17 +21,14 @@ type margin struct {
 // its consequence, told for the same corner; at a stable corner a margin that does not exist holds.
 func (m margin) decide(c *Case) []Finding {
 	limit := c.atLeast(m.limit, m.target)
-	corner, value := c.unstable(), math.NaN()
-	if corner != nil {
-		value = m.of(corner)
-	} else {
-		var negative float64
+	corner, negative := c.unstable(), 0.0
+	if corner == nil {
 		corner, negative = c.worst(func(k *analysis.Corner) float64 { return -m.of(k) })
-		value = -negative
-		if corner == nil || value >= limit {
+		if corner == nil || -negative >= limit {
 			return nil
 		}
 	}
+	value := m.of(corner)
 	f := c.atCorner(targetOrGainPart(m.target)(c), corner)
 	switch {
 	case corner.Loop.Stable:

@@ -10,9 +10,9 @@ var modulusMargin = Rule{
 	Name:     "modulus-margin",
 	Group:    Loop,
 	Severity: Warning,
-	Sentence: "The loop gain keeps its distance from -1 at every frequency and corner.",
-	Formula:  "min |1 + T(jw)| >= limit",
-	Source:   "S. Skogestad, I. Postlethwaite, \"Multivariable Feedback Control\" (1996), section 2.4: a sensitivity peak below 2",
+	Sentence: "The loop gain keeps its distance from −1 at every frequency and corner.",
+	Formula:  "min |1 + T(j·2π·f)| ≥ limit",
+	Source:   "common practice: a sensitivity peak of at most 2, which alone guarantees 29° and 6 dB",
 	Policy:   []Threshold{modulusMarginLimit},
 	Example:  "targets: {modulus-margin: 0.7}   # the loop comes as close as 0.55",
 	Reads:    Figures,
@@ -23,7 +23,7 @@ var modulusMargin = Rule{
 			return loopFigure(k, func(k *analysis.Corner) float64 { return k.Loop.ModulusMargin })
 		},
 		sum: func(k *analysis.Corner) string {
-			return fmt.Sprintf("|1 + T(j 2 pi * %s)| = %s", number(k.Loop.ModulusFrequency, "Hz"), number(k.Loop.ModulusMargin, ""))
+			return fmt.Sprintf("|1 + T| at %s = %s", number(k.Loop.ModulusFrequency, "Hz"), number(k.Loop.ModulusMargin, ""))
 		},
 	}.decide,
 }

@@ -13,7 +13,7 @@ var optocouplerPole = Rule{
 	Group:    Loop,
 	Severity: Warning,
 	Sentence: "The optocoupler's pole is stated; stated without a spread it lies well above crossover, for it moves with load resistance, current and temperature.",
-	Formula:  "optocoupler-pole is given; without a spread it is >= optocoupler-clearance * highest fc",
+	Formula:  "optocoupler-pole is given; without a spread it is ≥ optocoupler-clearance · highest fc",
 	Source:   "common practice",
 	Policy:   []Threshold{optoClearance},
 	Example:  "compensator: {network: optocoupler, optocoupler-pole: 10 kHz, …}   # crosses at 6 kHz",
@@ -36,7 +36,7 @@ var optocouplerPole = Rule{
 		f.Severity = Note
 		f.Message = fmt.Sprintf("the optocoupler's pole %s has no spread and lies below %s times the highest crossover %s (limit %s): it moves with load resistance, current and temperature",
 			number(q.Nominal, "Hz"), short(c.threshold(optoClearance)), number(fc, "Hz"), number(limit, "Hz"))
-		f.Formula = fmt.Sprintf("%s * %s = %s", short(c.threshold(optoClearance)), number(fc, "Hz"), number(limit, "Hz"))
+		f.Formula = fmt.Sprintf("%s · %s = %s", short(c.threshold(optoClearance)), number(fc, "Hz"), number(limit, "Hz"))
 		f.Measured, f.Limit, f.Nominal = asNumber(q.Nominal, "Hz"), asNumber(limit, "Hz"), asNumber(q.Nominal, "Hz")
 		c.relate(&f, "decides crossover or pole", "/compensator/led-resistor", "/compensator/pull-up-resistor", "/compensator/current-transfer-ratio")
 		return []Finding{f}

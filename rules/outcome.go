@@ -100,6 +100,22 @@ func stamp(c *Case, rule *Rule, f *Finding) {
 		f.Severity = rule.Severity
 	}
 	f.CornerWords = c.cornerWords(f.Corner)
+	f.Message = toldApart(f)
+}
+
+// toldApart is a finding's message with the measured figure to more digits where it reads like the limit to three. The
+// measured figure is the first of the two in every message.
+func toldApart(f *Finding) string {
+	if f.Measured == nil || f.Limit == nil || f.Measured.Unit != f.Limit.Unit {
+		return f.Message
+	}
+	measured, limit := f.Measured.Value, f.Limit.Value
+	for _, unit := range []string{f.Measured.Unit, "%"} {
+		if three := number(measured, unit); three == number(limit, unit) && strings.Count(f.Message, three) > 1 {
+			return strings.Replace(f.Message, three, finer(measured, limit, unit), 1)
+		}
+	}
+	return f.Message
 }
 
 func missingNeeds(c *Case, rule *Rule) string {

@@ -14,7 +14,7 @@ var outputRipple = Rule{
 	Group:    Operating,
 	Severity: Warning,
 	Sentence: "The output ripple meets its target at every corner.",
-	Formula:  "peak to peak of the output current's harmonics over the output admittance <= targets.output-ripple",
+	Formula:  "peak to peak of Σ Ik/Yk ≤ targets.output-ripple, Ik the harmonics of the output current, Yk the admittance of capacitors and load",
 	Source:   "common practice (Fourier series of the piecewise-linear output current; no equivalent series inductance)",
 	Example:  "targets: {output-ripple: 20 mV}   # 58 mV at low input and full load",
 	Reads:    Operation,
@@ -33,7 +33,7 @@ var outputRipple = Rule{
 		}
 		f := c.atCorner(outputRippleTarget, corner)
 		f.Message = fmt.Sprintf("output ripple %s peak to peak is above the target %s", number(volts, "V"), number(q.Nominal, "V"))
-		f.Formula = fmt.Sprintf("%s <= %s", number(volts, "V"), number(q.Nominal, "V"))
+		f.Formula = fmt.Sprintf("peak to peak of Σ Ik/Yk = %s; at most %s", number(volts, "V"), number(q.Nominal, "V"))
 		f.Measured, f.Limit, f.Nominal = asNumber(volts, "V"), asNumber(q.Nominal, "V"), asNumber(ripple(c.nominal()), "V")
 		c.relate(&f, "decides the ripple", "/output-capacitor/esr", "/output-capacitor/capacitance", "/output-capacitor/count",
 			"/output-capacitors", "/inductor/inductance", "/load/current")

@@ -11,7 +11,7 @@ func (c *Case) at(pointer string) Finding {
 	place := c.Spec.Place(pointer)
 	f := Finding{Pointer: place.Pointer, Doc: place.Doc, Start: place.Start, End: place.End}
 	if shared, ok := c.Spec.Shared(pointer); ok {
-		shared.Message = lastKey(pointer) + " comes from here"
+		shared.Message = placeWords(pointer) + " comes from here"
 		f.Related = append(f.Related, shared)
 	}
 	return f
@@ -27,7 +27,7 @@ func (c *Case) relate(f *Finding, why string, pointers ...string) {
 		if place.Doc == f.Doc && place.Start == f.Start && place.End == f.End || holds(f.Related, place) {
 			continue
 		}
-		place.Message = spaced(lastKey(pointer)) + " " + why
+		place.Message = placeWords(pointer) + " " + why
 		f.Related = append(f.Related, place)
 	}
 }

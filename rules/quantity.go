@@ -5,8 +5,8 @@ var quantity = Rule{
 	Group:    Declared,
 	Severity: Error,
 	Sentence: "Each quantity has a unit that fits its field, the right sign, its range in order and a tolerance that makes sense.",
-	Formula:  "min <= nominal <= max, in the field's unit",
-	Source:   "SI Brochure, 9th edition (2019); IEC 60062 (2016) for letter codes",
+	Formula:  "min ≤ nominal ≤ max, in the field's unit",
+	Source:   "the International System of Units; IEC 60062 (2016) for letter codes",
 	Example:  "inductor: {inductance: 22 uF}",
 	Reads:    Declaration,
 }

@@ -15,7 +15,8 @@ type rating struct {
 	unit    string
 	derate  Threshold
 	of      func(*Case, *analysis.Corner) float64
-	decided []string // pointers of the other values that decide it
+	sum     func(*Case, *analysis.Corner) string // what the figure is made of at a corner
+	decided []string                             // pointers of the other values that decide it
 }
 
 func (r rating) applies(c *Case) bool { return c.Spec.Has(r.pointer) }
@@ -38,7 +39,10 @@ func (r rating) decide(c *Case) []Finding {
 		f.Message = fmt.Sprintf("%s %s, above %s of its rating of %s (limit %s)",
 			r.what, number(stress, r.unit), percent(derating), number(rated, r.unit), number(limit, r.unit))
 	}
-	f.Formula = fmt.Sprintf("%s <= %s * %s = %s", number(stress, r.unit), short(limit/rated), number(rated, r.unit), number(limit, r.unit))
+	f.Formula = fmt.Sprintf("%s = %s; at most %s", r.sum(c, corner), number(stress, r.unit), number(rated, r.unit))
+	if limit < rated {
+		f.Formula = fmt.Sprintf("%s = %s; at most %s · %s = %s", r.sum(c, corner), number(stress, r.unit), short(derating), number(rated, r.unit), number(limit, r.unit))
+	}
 	f.Measured, f.Limit, f.Nominal = asNumber(stress, r.unit), asNumber(limit, r.unit), asNumber(r.of(c, c.nominal()), r.unit)
 	c.relate(&f, "decides the stress", r.decided...)
 	return []Finding{f}

@@ -10,6 +10,10 @@ var rectifierBlocks = rating{
 	of: func(c *Case, k *analysis.Corner) float64 {
 		return plant.StressOf(c.circuit(k.At)).Rectifier
 	},
+	sum: func(c *Case, k *analysis.Corner) string {
+		_, symbols := blockingSums(c.Design.Nominal.Circuit.Topology)
+		return voltageSum(c, k, symbols)
+	},
 	decided: []string{"/input-voltage", "/output-voltage", "/turns"},
 }
 
@@ -18,7 +22,7 @@ var rectifierVoltage = Rule{
 	Group:    Operating,
 	Severity: Error,
 	Sentence: "The rectifier's rating stands clear of the voltage that it blocks at every corner, ringing not counted.",
-	Formula:  "ideal blocking voltage <= voltage-derating * rating (warning), <= rating (error)",
+	Formula:  "ideal blocking voltage ≤ voltage-derating · rating (warning), ≤ rating (error)",
 	Source:   "common practice (volt-second balance of each topology)",
 	Policy:   []Threshold{voltageDerating},
 	Example:  "topology: boost\noutput-voltage: 48 V\nrectifier: {voltage-rating: 40 V}",

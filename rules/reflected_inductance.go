@@ -5,7 +5,7 @@ var reflectedInductance = Rule{
 	Group:    Declared,
 	Severity: Error,
 	Sentence: "The stated effective inductance is the one on the output side, and no stated figure is off by a slip of reflection.",
-	Formula:  "L on the output side = n² * L on the primary; |stated - recomputed| <= stated-tolerance * recomputed",
+	Formula:  "L on the output side = n² · L on the primary; |stated − recomputed| ≤ stated-tolerance · recomputed",
 	Source:   "common practice",
 	Policy:   []Threshold{statedTolerance},
 	Example:  "turns: {primary: 18, secondary: 6}\ninductor: {inductance: 90 uH, side: primary}\nstated: {effective-inductance: 30 uH}   # n for n²: it is 10 uH",

@@ -13,7 +13,7 @@ var resonanceCrossover = Rule{
 	Group:    Plant,
 	Severity: Warning,
 	Sentence: "No crossover lies on or beside a sharp output-filter resonance, where phase and gain turn quickest.",
-	Formula:  "fc <= f0 / resonance-clearance, or fc >= f0 * resonance-clearance, wherever Q > 1",
+	Formula:  "fc ≤ f0 / resonance-clearance, or fc ≥ f0 · resonance-clearance, wherever Q > 1",
 	Source:   "common practice",
 	Policy:   []Threshold{resonanceClearance},
 	Example:  "compensator: {network: type-1, integrator-capacitor: 10n, …}   # integrator that crosses on the resonance",
@@ -43,7 +43,7 @@ var resonanceCrossover = Rule{
 		f := c.atCorner(gainPart(c), corner)
 		f.Message = fmt.Sprintf("crossover %s lies within a factor of %s of the output filter's resonance, %s with quality %s (keep out of %s to %s)",
 			number(fc, "Hz"), short(clearance), number(f0, "Hz"), number(q, ""), number(f0/clearance, "Hz"), number(f0*clearance, "Hz"))
-		f.Formula = fmt.Sprintf("f0 / %s = %s, f0 * %s = %s; fc = %s",
+		f.Formula = fmt.Sprintf("f0 / %s = %s, f0 · %s = %s; fc = %s",
 			short(clearance), number(f0/clearance, "Hz"), short(clearance), number(f0*clearance, "Hz"), number(fc, "Hz"))
 		f.Measured, f.Limit, f.Nominal = asNumber(fc, "Hz"), asNumber(limit, "Hz"), nominalCrossover(c)
 		c.relate(&f, "sets the resonance", "/inductor/inductance", "/output-capacitor/capacitance", "/output-capacitors")

@@ -12,7 +12,7 @@ var rhpZeroCrossover = Rule{
 	Group:    Plant,
 	Severity: Error,
 	Sentence: "Crossover stays well below the right-half-plane zero at every corner.",
-	Formula:  "fc <= rhp-zero-fraction * fz, both of the same corner",
+	Formula:  "fc ≤ rhp-zero-fraction · fz, both of the same corner",
 	Source:   "K. J. Åström, \"Limitations on control system performance\", European Journal of Control 6 (2000); the fraction of 1/5 is common practice",
 	Policy:   []Threshold{rhpZeroFraction},
 	Example:  "compensator: {network: type-3, feedback-resistor: 47k, …}   # crosses at a third of the zero",
@@ -31,7 +31,7 @@ var rhpZeroCrossover = Rule{
 		f := c.atCorner(gainPart(c), corner)
 		f.Message = fmt.Sprintf("crossover %s is above %s of the right-half-plane zero, %s (limit %s)",
 			number(fc, "Hz"), fraction(limit), number(fz, "Hz"), number(limit*fz, "Hz"))
-		f.Formula = fmt.Sprintf("fc <= %s * fz = %s * %s = %s; fc = %s",
+		f.Formula = fmt.Sprintf("fc ≤ %s · fz = %s · %s = %s; fc = %s",
 			fraction(limit), fraction(limit), number(fz, "Hz"), number(limit*fz, "Hz"), number(fc, "Hz"))
 		f.Measured, f.Limit = asNumber(fc, "Hz"), asNumber(limit*fz, "Hz")
 		f.Nominal = nominalCrossover(c)

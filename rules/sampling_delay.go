@@ -11,7 +11,7 @@ var samplingDelay = Rule{
 	Group:    Loop,
 	Severity: Warning,
 	Sentence: "A digital loop crosses well below its sampling frequency, and its delay costs little phase there.",
-	Formula:  "fc <= sampling-fraction * sampling-frequency, and 360° * delay * fc <= delay-phase",
+	Formula:  "fc ≤ sampling-fraction · sampling-frequency, and 360° · delay · fc ≤ delay-phase",
 	Source:   "common practice",
 	Policy:   []Threshold{samplingFraction, delayPhase},
 	Example:  "compensator: {network: digital, sampling-frequency: 100 kHz, delay: 15 us, …}   # crosses at 8 kHz: 43°",
@@ -31,7 +31,7 @@ var samplingDelay = Rule{
 		sampling := fmt.Sprintf("crossover %s is above %s of the sampling frequency %s (limit %s)", number(fc, "Hz"),
 			fraction(c.threshold(samplingFraction)), number(parts.SamplingFrequency, "Hz"), number(share, "Hz"))
 		delay := fmt.Sprintf("the delay costs %s of phase at the crossover %s, limit %s", number(cost, "deg"), number(fc, "Hz"), number(costLimit, "deg"))
-		f.Formula = fmt.Sprintf("%s * %s = %s; 360° * delay * %s = %s", fraction(c.threshold(samplingFraction)), number(parts.SamplingFrequency, "Hz"),
+		f.Formula = fmt.Sprintf("%s · %s = %s; 360° · delay · %s = %s", fraction(c.threshold(samplingFraction)), number(parts.SamplingFrequency, "Hz"),
 			number(share, "Hz"), number(fc, "Hz"), number(cost, "deg"))
 		switch {
 		case fc <= share && cost <= costLimit:

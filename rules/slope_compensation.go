@@ -13,7 +13,7 @@ var slopeCompensation = Rule{
 	Group:    Plant,
 	Severity: Error,
 	Sentence: "In peak current mode the ramp damps the inner loop at half the filter's frequency at every continuous corner, without drowning the current signal.",
-	Formula:  "mc * (1 - D) > 1/2 with mc = 1 + Se/Sn; Q = 1/(pi * (mc * (1 - D) - 1/2)) within half-frequency-quality",
+	Formula:  "mc · (1 − D) > 1/2 with mc = 1 + Se/Sn; Q = 1/(π · (mc · (1 − D) − 1/2)) within half-frequency-quality",
 	Source:   "R. B. Ridley, \"A new, continuous-time model for current-mode control\", IEEE Trans. Power Electronics 6(2) (1991)",
 	Policy:   []Threshold{halfQualityLow, halfQualityHigh},
 	Example:  "topology: buck\ninput-voltage: {min: 14 V, max: 24 V}\noutput-voltage: 9 V\nmodulator: {scheme: peak-current-mode, current-sense-gain: 50 mΩ}   # duty above 1/2 without a ramp",
@@ -54,8 +54,9 @@ var slopeCompensation = Rule{
 			return nil
 		}
 		inner := corner.Plant.Current
-		f.Formula = fmt.Sprintf("mc = 1 + Se/Sn = 1 + %s/%s = %s; mc * (1 - D) = %s * (1 - %s) = %s",
-			number(inner.ExternalSlope, "V/s"), number(inner.OnSlope, "V/s"), short(inner.SlopeRatio), short(inner.SlopeRatio), short(corner.Plant.Duty), short(product))
+		f.Formula = fmt.Sprintf("mc = 1 + Se/Sn = 1 + %s/%s = %s; mc · (1 − D) = %s · (1 − %s) = %s, above 1/2; Q = 1/(π · (%s − 1/2)) = %s",
+			number(inner.ExternalSlope, "V/s"), number(inner.OnSlope, "V/s"), short(inner.SlopeRatio), short(inner.SlopeRatio), short(corner.Plant.Duty), short(product),
+			short(product), short(quality))
 		c.relate(&f, "decides the slopes", "/modulator/current-sense-gain", "/inductor/inductance", "/input-voltage", "/output-voltage", "/magnetizing-inductance")
 		return []Finding{f}
 	},

@@ -12,6 +12,7 @@ var switchCarries = rating{
 			return plant.SwitchPeak(c.circuit(k.At), &k.Plant)
 		})
 	},
+	sum:     switchCurrentSum,
 	decided: []string{"/load/current", "/input-voltage", "/inductor/inductance", "/turns"},
 }
 
@@ -20,7 +21,7 @@ var switchCurrent = Rule{
 	Group:    Operating,
 	Severity: Error,
 	Sentence: "The switch's rating stands clear of its peak current at every corner, on its own side.",
-	Formula:  "peak switch current <= current-derating * rating (warning), <= rating (error)",
+	Formula:  "peak switch current ≤ current-derating · rating (warning), ≤ rating (error)",
 	Source:   "common practice",
 	Policy:   []Threshold{currentDerating},
 	Example:  "switch: {current-rating: 5 A}   # 6.2 A at low input and full load",

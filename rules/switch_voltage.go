@@ -10,6 +10,10 @@ var switchBlocks = rating{
 	of: func(c *Case, k *analysis.Corner) float64 {
 		return plant.StressOf(c.circuit(k.At)).Switch
 	},
+	sum: func(c *Case, k *analysis.Corner) string {
+		symbols, _ := blockingSums(c.Design.Nominal.Circuit.Topology)
+		return voltageSum(c, k, symbols)
+	},
 	decided: []string{"/input-voltage", "/output-voltage", "/turns"},
 }
 
@@ -18,7 +22,7 @@ var switchVoltage = Rule{
 	Group:    Operating,
 	Severity: Error,
 	Sentence: "The switch's rating stands clear of the voltage that it blocks at every corner, ringing not counted.",
-	Formula:  "ideal blocking voltage <= voltage-derating * rating (warning), <= rating (error)",
+	Formula:  "ideal blocking voltage ≤ voltage-derating · rating (warning), ≤ rating (error)",
 	Source:   "common practice (volt-second balance of each topology)",
 	Policy:   []Threshold{voltageDerating},
 	Example:  "topology: flyback\ninput-voltage: {min: 36 V, max: 72 V}\nswitch: {voltage-rating: 100 V}   # blocks 108 V",

@@ -11,7 +11,7 @@ var switchingCrossover = Rule{
 	Group:    Plant,
 	Severity: Warning,
 	Sentence: "Crossover stays well below the frequency at which the output filter is switched, where the averaged model holds.",
-	Formula:  "fc <= switching-fraction * ff",
+	Formula:  "fc ≤ switching-fraction · ff",
 	Source:   "R. D. Middlebrook, S. Ćuk, \"A general unified approach to modelling switching-converter power stages\", IEEE PESC (1976), on the averaged model's range; the fraction of 1/5 is common practice",
 	Policy:   []Threshold{switchingFraction},
 	Example:  "switching-frequency: 100 kHz\ncompensator: {network: type-3, feedback-resistor: 100k, …}   # crosses at 40 kHz",
@@ -31,7 +31,7 @@ var switchingCrossover = Rule{
 		f := c.atCorner(gainPart(c), corner)
 		f.Message = fmt.Sprintf("crossover %s is above %s of the %s, %s (limit %s)",
 			number(fc, "Hz"), fraction(limit), what, number(ff, "Hz"), number(limit*ff, "Hz"))
-		f.Formula = fmt.Sprintf("fc <= %s * ff = %s * %s = %s; fc = %s",
+		f.Formula = fmt.Sprintf("fc ≤ %s · ff = %s · %s = %s; fc = %s",
 			fraction(limit), fraction(limit), number(ff, "Hz"), number(limit*ff, "Hz"), number(fc, "Hz"))
 		f.Measured, f.Limit, f.Nominal = asNumber(fc, "Hz"), asNumber(limit*ff, "Hz"), nominalCrossover(c)
 		c.relate(&f, "sets the limit", "/switching-frequency")

@@ -5,7 +5,7 @@ var turnsRatio = Rule{
 	Group:    Declared,
 	Severity: Error,
 	Sentence: "The stated turns ratio is secondary over primary, and no stated figure is off by a slip of the ratio.",
-	Formula:  "n = turns.secondary / turns.primary; |stated - recomputed| <= stated-tolerance * recomputed",
+	Formula:  "n = turns.secondary / turns.primary; |stated − recomputed| ≤ stated-tolerance · recomputed",
 	Source:   "common practice",
 	Policy:   []Threshold{statedTolerance},
 	Example:  "turns: {primary: 18, secondary: 6}\nstated: {turns-ratio: 3}",

@@ -18,12 +18,50 @@ func number(value float64, unit string) string {
 	case unit == "%":
 		return percent(value)
 	}
-	return schema.Format(value, unit)
+	return minus(schema.Format(value, unit))
 }
 
 // percent prints a ratio per cent to three significant digits.
 func percent(ratio float64) string {
-	return schema.Format(ratio, "%")
+	return minus(schema.Format(ratio, "%"))
+}
+
+// minus writes the sign of a negative number as prose does, U+2212.
+func minus(printed string) string {
+	if after, negative := strings.CutPrefix(printed, "-"); negative {
+		return "−" + after
+	}
+	return printed
+}
+
+// bracketed is a number that follows a sign or a dot: a negative one stands in brackets.
+func bracketed(value float64, unit string) string {
+	if value < 0 {
+		return "(" + number(value, unit) + ")"
+	}
+	return number(value, unit)
+}
+
+// finer prints a figure with as many more digits as it takes to tell it from a limit that reads the same to three.
+func finer(value, limit float64, unit string) string {
+	three := number(value, unit)
+	if value == limit || three != number(limit, unit) {
+		return three
+	}
+	end := strings.LastIndexAny(three, "0123456789") + 1
+	shown, err := strconv.ParseFloat(strings.Replace(three[:end], "−", "-", 1), 64)
+	if err != nil || shown == 0 {
+		return three
+	}
+	scale := math.Pow(10, math.Round(math.Log10(math.Abs(shown/value))))
+	_, decimals, _ := strings.Cut(three[:end], ".")
+	for more := 1; more <= 6; more++ {
+		print := func(v float64) string { return strconv.FormatFloat(v*scale, 'f', len(decimals)+more, 64) }
+		if print(value) != print(limit) {
+			return minus(print(value)) + three[end:]
+		}
+	}
+	return three
 }
 
 // fraction prints a limit that is one part of something as 1/5, anything else as a number.
@@ -39,7 +77,11 @@ func fraction(value float64) string {
 
 // short prints a plain number as a person would: three significant digits, no trailing zeros.
 func short(value float64) string {
-	return strconv.FormatFloat(value, 'g', 3, 64)
+	printed := number(value, "")
+	if !strings.Contains(printed, ".") || strings.Contains(printed, "e") {
+		return printed
+	}
+	return strings.TrimRight(strings.TrimRight(printed, "0"), ".")
 }
 
 // asNumber wraps a figure for a finding; a figure that does not exist is left out.
@@ -77,8 +119,40 @@ func spaced(key string) string {
 		return "LED resistor"
 	case "pull-up-resistor":
 		return "pull-up resistor"
+	case "open-loop-gain":
+		return "open-loop gain"
+	case "on-resistance":
+		return "on-resistance"
 	}
 	return strings.ReplaceAll(key, "-", " ")
+}
+
+// placeWords names the value at a JSON pointer so that it cannot be taken for another: "load current", "output capacitor's
+// ESR", "input filter's damping resistance".
+func placeWords(pointer string) string {
+	steps := strings.Split(strings.TrimPrefix(pointer, "/"), "/")
+	last := spaced(steps[len(steps)-1])
+	switch owner := steps[0]; {
+	case pointer == "/load/current":
+		return "load current"
+	case pointer == "/inductor/inductance":
+		return last
+	case owner == "compensator" && len(steps) == 3 && steps[1] == "amplifier":
+		return "amplifier's " + last
+	case owner == "modulator" && steps[len(steps)-1] == "min", owner == "modulator" && steps[len(steps)-1] == "max":
+		return map[string]string{"min": "lower ", "max": "upper "}[steps[len(steps)-1]] + spaced(steps[len(steps)-2])
+	case owner == "output-capacitors" && len(steps) == 1:
+		return "list of output capacitors"
+	case owner == "output-capacitors":
+		if bank, err := strconv.Atoi(steps[1]); err == nil {
+			return fmt.Sprintf("%s of output capacitor bank %d", last, bank+1)
+		}
+	case len(steps) > 1 && steps[len(steps)-1] == "count":
+		return "number of " + spaced(owner) + "s"
+	case len(steps) == 1 || owner == "compensator" || owner == "modulator" || owner == "stated":
+		return last
+	}
+	return spaced(steps[0]) + "'s " + last
 }
 
 // pointerOf turns a dotted path of the spec format into a JSON pointer.

@@ -45,3 +45,30 @@ func TestPercentAndNumbersHaveThreeDigits(t *testing.T) {
 }
 
 func zero() float64 { return 0 }
+
+func TestNumbersReadAsAnEngineerWritesThem(t *testing.T) {
+	assert.Equal(t, "−4.20°", number(-4.2, "deg"), "a true minus sign")
+	assert.Equal(t, "(−4.20°)", bracketed(-4.2, "deg"))
+	assert.Equal(t, "1520", short(1523), "no exponent below a million")
+	assert.Equal(t, "0.5", short(0.5))
+	assert.Equal(t, "44.98°", finer(44.98, 45, "deg"), "more digits where three do not tell the two apart")
+	assert.Equal(t, "44.9°", finer(44.9, 45, "deg"))
+	assert.Equal(t, "2.6202 kHz", finer(2620.2, 2620, "Hz"))
+}
+
+func TestPlacesAreNamedSoThatTheyCannotBeMistaken(t *testing.T) {
+	for pointer, words := range map[string]string{
+		"/load/current":                         "load current",
+		"/output-capacitor/esr":                 "output capacitor's ESR",
+		"/output-capacitors/1/esr":              "ESR of output capacitor bank 2",
+		"/output-capacitor/count":               "number of output capacitors",
+		"/second-inductor/inductance":           "second inductor's inductance",
+		"/compensator/led-resistor":             "LED resistor",
+		"/compensator/amplifier/open-loop-gain": "amplifier's open-loop gain",
+		"/modulator/duty-limit/min":             "lower duty limit",
+		"/switch/on-resistance":                 "switch's on-resistance",
+		"/input-voltage":                        "input voltage",
+	} {
+		assert.Equal(t, words, placeWords(pointer))
+	}
+}
