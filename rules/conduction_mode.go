@@ -54,22 +54,51 @@ var conductionMode = Rule{
 	},
 }
 
-// modeExtremes are the first discontinuous corner with the lowest load over critical current, and the first continuous one
-// with the highest; nil where a mode does not occur.
+// modeExtremes are the discontinuous corner with the lowest load over critical current, and the continuous one with the highest;
+// nil where a mode does not occur.
 func modeExtremes(c *Case) (light, heavy *analysis.Corner) {
-	light, _ = c.worst(func(k *analysis.Corner) float64 {
-		if !k.Reached || k.Plant.Mode != plant.Discontinuous {
-			return math.NaN()
-		}
-		return -c.valueAt(k, "load.current")
-	})
-	heavy, _ = c.worst(func(k *analysis.Corner) float64 {
-		if !continuous(k) {
-			return math.NaN()
-		}
-		return c.valueAt(k, "load.current")
-	})
+	light = c.deepest(func(k *analysis.Corner) bool { return k.Reached && k.Plant.Mode == plant.Discontinuous }, -1)
+	heavy = c.deepest(continuous, 1)
 	return light, heavy
+}
+
+// deepest finds the corner of a mode that lies furthest from the boundary: sign 1 asks for the highest load over critical
+// current, −1 for the lowest. The critical current falls with the inductance, so that one corner for each input voltage, the
+// one with the extreme product of load and inductance, is solved for.
+func (c *Case) deepest(of func(*analysis.Corner) bool, sign float64) *analysis.Corner {
+	candidates := make(map[float64]*analysis.Corner)
+	var inputs []float64
+	for i := range c.Result.Corners {
+		k := &c.Result.Corners[i]
+		if !of(k) {
+			continue
+		}
+		input := c.valueAt(k, "input-voltage")
+		held, known := candidates[input]
+		if !known {
+			inputs = append(inputs, input)
+		}
+		product := func(k *analysis.Corner) float64 {
+			return sign * c.valueAt(k, "load.current") * k.Plant.EffectiveInductance
+		}
+		if !known || product(k)-product(held) > 1e-9*math.Abs(product(held)) {
+			candidates[input] = k
+		}
+	}
+	inputs = slices.DeleteFunc(inputs, func(volts float64) bool {
+		axis := c.axis("input-voltage")
+		return len(inputs) > 3 && volts != axis.Min && volts != axis.Nominal && volts != axis.Max
+	})
+	var r race
+	for _, input := range inputs {
+		k := candidates[input]
+		ratio := c.valueAt(k, "load.current") / c.boundary(k)
+		if math.IsNaN(ratio) { // a synchronous rectifier knows no boundary
+			ratio = c.valueAt(k, "load.current")
+		}
+		r.enter(k, sign*ratio)
+	}
+	return r.leader
 }
 
 // criticalWords says the load below which each input voltage leaves continuous conduction, with a corner's parts.

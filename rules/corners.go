@@ -68,6 +68,18 @@ func distinctStages(result *analysis.Result) []int {
 	return distinct
 }
 
+// withoutCompensator is a corner with the compensator's parts at their nominal values: what does not look at the loop is the
+// same there, and says so in fewer words.
+func (c *Case) withoutCompensator(corner []analysis.Setting) []analysis.Setting {
+	plain := slices.Clone(corner)
+	for i, s := range plain {
+		if onCompensator(s.Path) {
+			plain[i].Value = c.axis(s.Path).Nominal
+		}
+	}
+	return plain
+}
+
 func onCompensator(path string) bool { return strings.HasPrefix(path, "compensator.") }
 
 // nominal is the corner at nominal input, load and parts.

@@ -42,7 +42,7 @@ var crossoverWindow = Rule{
 		inductance := fmt.Sprintf("%s times the inductance", short(ratio*ratio))
 		if byZero {
 			what = fmt.Sprintf("%s of the right-half-plane zero, %s", fraction(c.threshold(rhpZeroFraction)), number(corner.Plant.RHPZero, "Hz"))
-			inductance = fmt.Sprintf("%s of the inductance", short(1/(ratio*ratio)))
+			inductance = part(1/(ratio*ratio)) + " of the inductance"
 		}
 		f.Message = fmt.Sprintf("no room for a crossover above the resonance: %s times %s is %s, above the ceiling %s set by %s; %s or %s times the output capacitance would make room, or a crossover below %s",
 			short(clearance), number(corner.Plant.Resonance, "Hz"), number(floor, "Hz"), number(ceiling, "Hz"), what,

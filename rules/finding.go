@@ -65,6 +65,8 @@ type Finding struct {
 	Limit       *Number
 	Related     []schema.Related
 	Cause       *Cause // this finding is a consequence of another in the same list
+	About       string // of not-assessed: the rule that could not be assessed
+	Reason      string // of not-assessed: why
 }
 
 // Cause names the finding that a consequence follows from.

@@ -33,6 +33,9 @@ func (s Status) String() string {
 	return "unknown"
 }
 
+// Key is the status as a word of the output forms.
+func (s Status) Key() string { return strings.ReplaceAll(s.String(), " ", "-") }
+
 // Outcome is what became of one rule on one file. A rule that is broken at some corners and could not be assessed at
 // others has its findings and Reason both.
 type Outcome struct {
@@ -98,6 +101,9 @@ func stamp(c *Case, rule *Rule, f *Finding) {
 	f.Rule = rule.Name
 	if f.Severity == 0 {
 		f.Severity = rule.Severity
+	}
+	if rule.Reads != Figures {
+		f.Corner = c.withoutCompensator(f.Corner)
 	}
 	f.CornerWords = c.cornerWords(f.Corner)
 	f.Message = toldApart(f)

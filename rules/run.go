@@ -13,10 +13,19 @@ func (o RunOptions) chosen(name string) bool {
 	return (len(o.Only) == 0 || slices.Contains(o.Only, name)) && !slices.Contains(o.Without, name)
 }
 
+// Judgement is all that the rules say about a case.
+type Judgement struct {
+	Findings []Finding // worded and sorted
+	Outcomes []Outcome // of the rules that were chosen, in the order of the catalogue
+}
+
 // Run applies the rules to a case and gives their findings, worded and sorted: what is broken, what could not be assessed,
 // and what failed inside the program. Consequences name their cause.
-func Run(c *Case, o RunOptions) []Finding {
-	var findings []Finding
+func Run(c *Case, o RunOptions) []Finding { return Judge(c, o).Findings }
+
+// Judge is Run that also tells what became of each rule.
+func Judge(c *Case, o RunOptions) Judgement {
+	var j Judgement
 	for _, rule := range list {
 		severity, set := c.Settings.Severities[rule.Name]
 		if !o.chosen(rule.Name) || set && severity == None {
@@ -27,18 +36,24 @@ func Run(c *Case, o RunOptions) []Finding {
 			if set {
 				f.Severity = severity
 			}
-			findings = append(findings, f)
+			j.Findings = append(j.Findings, f)
 		}
 		switch {
 		case out.Panic != "" && o.chosen(internal.Name):
-			findings = append(findings, Internal(c.Spec.Document, "rule "+rule.Name+" failed inside the program: "+out.Panic))
+			j.Findings = append(j.Findings, Internal(c.Spec.Document, "rule "+rule.Name+" failed inside the program: "+out.Panic))
 		case out.Reason != "" && o.chosen(notAssessed.Name):
-			findings = appendNotAssessed(findings, c, &out)
+			j.Findings = appendNotAssessed(j.Findings, c, &out)
+		}
+		j.Outcomes = append(j.Outcomes, out)
+	}
+	for i := range j.Outcomes { // the rules of the runner itself
+		if out := &j.Outcomes[i]; out.Rule.Decide == nil && broken(j.Findings, out.Rule) != nil {
+			out.Status = Broken
 		}
 	}
-	tieCauses(findings)
-	Sort(findings)
-	return findings
+	tieCauses(c, j.Findings)
+	Sort(j.Findings)
+	return j
 }
 
 // appendNotAssessed adds the note for a rule that applies but could not be assessed everywhere.
@@ -53,6 +68,7 @@ func appendNotAssessed(findings []Finding, c *Case, out *Outcome) []Finding {
 	f := c.at(placeOfNote(c, out.Rule))
 	f.Rule, f.Severity = notAssessed.Name, severity
 	f.Message = out.Rule.Name + " is not assessed: " + out.Reason
+	f.About, f.Reason = out.Rule.Name, out.Reason
 	if out.Unreached {
 		f.Cause = &Cause{Rule: dutyRange.Name}
 	}
@@ -78,34 +94,4 @@ func Internal(doc *schema.Document, message string) Finding {
 		f.Start, f.End = doc.Root.Entries[0].KeyStart, doc.Root.Entries[0].KeyEnd
 	}
 	return f
-}
-
-// causeOf names the rule whose finding explains a rule's findings at the same corner, "" for a rule that stands alone.
-func causeOf(rule string) string {
-	switch rule {
-	case "phase-margin", "gain-margin", "modulus-margin":
-		return "closed-loop-stability"
-	}
-	return ""
-}
-
-// tieCauses points consequences at the finding that they follow from, and lets go of causes that are not in the list.
-func tieCauses(findings []Finding) {
-	for i := range findings {
-		f := &findings[i]
-		cause, anyCorner := causeOf(f.Rule), false
-		if f.Cause != nil { // the rule knows better
-			cause, anyCorner = f.Cause.Rule, true
-		}
-		f.Cause = nil
-		at := slices.IndexFunc(findings, func(g Finding) bool { return g.Rule == cause })
-		if cause == "" || at < 0 || !anyCorner && !sameCorner(f.Corner, findings[at].Corner) {
-			continue
-		}
-		f.Cause = &Cause{Rule: cause, Pointer: findings[at].Pointer}
-		f.Related = append(f.Related, schema.Related{
-			Doc: findings[at].Doc, Pointer: findings[at].Pointer, Start: findings[at].Start, End: findings[at].End,
-			Message: "follows from " + cause,
-		})
-	}
 }

@@ -17,6 +17,8 @@ func number(value float64, unit string) string {
 		return "none"
 	case unit == "%":
 		return percent(value)
+	case (unit == "deg" || unit == "dB") && math.Abs(value) < 1e-3:
+		value = 0 // what a search leaves of a boundary
 	}
 	return minus(schema.Format(value, unit))
 }
@@ -71,6 +73,14 @@ func fraction(value float64) string {
 		if whole <= 100 && math.Abs(1/value-whole) < 1e-9*whole {
 			return fmt.Sprintf("1/%.0f", whole)
 		}
+	}
+	return short(value)
+}
+
+// part prints what is left of something: 0.763 of it, or 1/18300 of it where that reads better.
+func part(value float64) string {
+	if value < 0.1 {
+		return "1/" + short(1/value)
 	}
 	return short(value)
 }

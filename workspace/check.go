@@ -60,7 +60,8 @@ func (w *Workspace) CheckDocument(ctx context.Context, doc *schema.Document, o O
 		f.fails(doc, err.Error())
 	case c != nil:
 		f.Spec, f.Result = c.Spec, c.Result
-		f.Findings = rules.Run(c, always(o.Rules))
+		judged := rules.Judge(c, always(o.Rules))
+		f.Findings, f.Outcomes = judged.Findings, judged.Outcomes
 		for _, found := range f.Findings {
 			f.Defect = f.Defect || found.Rule == defect
 		}

@@ -33,6 +33,7 @@ type File struct {
 	Spec     *schema.Spec     // nil when unreadable
 	Result   *analysis.Result // nil when unreadable
 	Findings []rules.Finding  // sorted by position, then rule
+	Outcomes []rules.Outcome  // what became of each rule that was chosen; nil when unreadable
 	Defect   bool             // a rule or the analysis failed inside the program (exit 3)
 }
 
