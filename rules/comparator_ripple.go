@@ -3,6 +3,7 @@ package rules
 import (
 	"fmt"
 	"math"
+	"slices"
 
 	"halfplane/analysis"
 	"halfplane/analysis/network"
@@ -28,17 +29,24 @@ var comparatorRipple = Rule{
 	Decide: func(c *Case) []Finding {
 		limit := c.threshold(comparatorRippleDeg)
 		target := c.atLeast(phaseMarginLimit, "/targets/phase-margin")
-		corner, _ := c.worst(func(k *analysis.Corner) float64 {
-			switch {
-			case !hasRipple(k) || !k.Loop.Stable:
+		corner, score := c.worst(rippleScore)
+		if corner == nil {
+			return nil
+		}
+		if k := corner; k.Ripple.PhaseMargin < target+limit && k.Ripple.PhaseMargin < k.Loop.PhaseMargin-limit/4 {
+			corner = rippleDescent(c, corner, score)
+		}
+		breaks := func(k *analysis.Corner) bool {
+			return !k.Ripple.Stable || k.Ripple.PhaseMargin < k.Loop.PhaseMargin-limit && k.Ripple.PhaseMargin < target-limit
+		}
+		if !breaks(corner) { // the lowest margin is low without the ripple already; another corner can lose more
+			corner, _ = c.worst(func(k *analysis.Corner) float64 {
+				if score := rippleScore(k); !math.IsNaN(score) && breaks(k) {
+					return score
+				}
 				return math.NaN()
-			case !k.Ripple.Stable:
-				return 1000 + unstableScore(k.Ripple.PhaseMargin) // before every stable corner
-			case k.Ripple.PhaseMargin < k.Loop.PhaseMargin-limit && k.Ripple.PhaseMargin < target-limit:
-				return -k.Ripple.PhaseMargin
-			}
-			return math.NaN()
-		})
+			})
+		}
 		if corner == nil {
 			return nil
 		}
@@ -64,6 +72,38 @@ var comparatorRipple = Rule{
 		c.relate(&f, "decides the ripple at the comparator", "/output-capacitor/esr", "/output-capacitors", "/compensator/lead-capacitor", "/compensator/rolloff-capacitor", "/modulator/ramp-amplitude")
 		return []Finding{f}
 	},
+}
+
+// rippleScore ranks corners whose averaged loop is stable: the lower the margin with ripple the higher, unstable ones first.
+func rippleScore(k *analysis.Corner) float64 {
+	switch {
+	case !hasRipple(k) || !k.Loop.Stable:
+		return math.NaN()
+	case !k.Ripple.Stable:
+		return 1000 + unstableScore(k.Ripple.PhaseMargin)
+	}
+	return -k.Ripple.PhaseMargin
+}
+
+// rippleDescent looks for a worse corner than the worst of those whose figures with ripple were computed: the analysis looks
+// for the corners that are worst for the averaged loop, and the highest ESR, worst for the ripple, need not be one of them.
+// One axis after the other goes to its extremes and stays where the margin with ripple is lower; two rounds.
+func rippleDescent(c *Case, corner *analysis.Corner, score float64) *analysis.Corner {
+	for range 2 {
+		for i, axis := range c.Design.Axes {
+			for _, value := range []float64{axis.Min, axis.Max} {
+				if value == corner.At[i].Value {
+					continue
+				}
+				settings := slices.Clone(corner.At)
+				settings[i].Value = value
+				if k, err := analysis.At(c.Design, settings); err == nil && rippleScore(&k) > score {
+					corner, score = &k, rippleScore(&k)
+				}
+			}
+		}
+	}
+	return corner
 }
 
 func hasRipple(k *analysis.Corner) bool { return continuous(k) && k.Loop != nil && k.Ripple != nil }

@@ -1,0 +1,21 @@
+package rules
+
+import (
+	"testing"
+
+	"github.com/stretchr/testify/assert"
+	"github.com/stretchr/testify/require"
+)
+
+func TestTheHighestESRDecidesTheMarginWithRipple(t *testing.T) {
+	c := caseOf(t, "comparator-ripple/highest-esr-only")
+	f := only(t, Run(c, RunOptions{}), "comparator-ripple")
+	require.NotNil(t, f.Measured)
+	corner, _ := c.worst(rippleScore)
+	assert.Less(t, f.Measured.Value, corner.Ripple.PhaseMargin-1, "lower than at every corner of the analysis")
+	for _, s := range f.Corner {
+		if s.Path == "output-capacitor.esr" {
+			assert.Equal(t, 0.025, s.Value)
+		}
+	}
+}
