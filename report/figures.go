@@ -23,14 +23,15 @@ func JSONFigures(w io.Writer, f workspace.File, o FigureOptions) error {
 }
 
 type figuresDocument struct {
-	Design              string      `json:"design"`
-	Title               string      `json:"title"`
-	Topology            string      `json:"topology"`
-	TurnsRatio          figure      `json:"turns-ratio"`
-	EffectiveInductance extent      `json:"effective-inductance"`
-	Corners             []cornerOut `json:"corners"`
-	Worst               any         `json:"worst"`
-	Method              string      `json:"method"`
+	Design              string       `json:"design"`
+	Title               string       `json:"title"`
+	Topology            string       `json:"topology"`
+	TurnsRatio          figure       `json:"turns-ratio"`
+	EffectiveInductance extent       `json:"effective-inductance"`
+	Corners             []cornerOut  `json:"corners"`
+	Worst               any          `json:"worst"`
+	Method              string       `json:"method"`
+	Outcomes            []outcomeOut `json:"outcomes,omitempty"`
 }
 
 type extent struct {
@@ -115,9 +116,10 @@ func figuresOf(f workspace.File, o FigureOptions) figuresDocument {
 		Topology: f.Spec.Text("/topology"),
 		Worst:    worstOf(f.Result, chosen.index),
 		Method:   f.Result.Method,
+		Outcomes: outcomesOf(f.Outcomes),
 	}
 	if o.At != nil {
-		out.Worst, out.Method = nil, "one point, as assigned"
+		out.Worst, out.Method, out.Outcomes = nil, "one point, as assigned", nil
 	}
 	low, nominal, high, turns := stageExtent(f.Spec.Design())
 	out.EffectiveInductance = extent{figure(low), figure(nominal), figure(high)}

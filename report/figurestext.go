@@ -8,7 +8,6 @@ import (
 
 	"halfplane/analysis"
 	"halfplane/rules"
-	"halfplane/schema"
 	"halfplane/workspace"
 )
 
@@ -18,17 +17,19 @@ inductor          average current and peak-to-peak ripple of one phase, on the o
 resonance         of the power stage alone: without input filter and without current loop
 RHP zero          lowest right-half-plane zero of the control-to-output response
 crossover         highest frequency at which the loop gain is one
-phase margin      smallest angle to -1 over all crossovers; negative: the closed loop is unstable
+phase margin      smallest angle to −1 over all crossovers; negative: the closed loop is unstable
+with ripple       the phase margin with the output ripple at the comparator counted (voltage mode, continuous conduction);
+                  the averaged figures beside it leave the ripple out: trust the lower of the two
 gain margin       gain that may be added before the loop oscillates; negative: it does
-modulus margin    closest approach of the loop gain to -1
-with ripple       the margin with the output ripple at the comparator counted
+modulus margin    closest approach of the loop gain to −1
+slope ratio mc    1 + Se/Sn, added slope over current slope; the inner loop of peak current mode needs mc·D′ above 1/2
 crossover / RHP   crossover over the right-half-plane zero of the same corner`
 
 // TextFigures writes the figures of one analysed design for a reader: what was assumed, the operating corners, the nominal
 // model beside its closed forms, and the worst figures with the corner of each in words.
 func TextFigures(w io.Writer, f workspace.File, o FigureOptions) error {
 	p := figurePage{w: w, file: f, design: f.Spec.Design(), chosen: choose(f.Result, o), o: o}
-	for _, part := range []func() error{p.header, p.corners, p.model, p.worst} {
+	for _, part := range []func() error{p.header, p.corners, p.models, p.model, p.worst, p.outcomes} {
 		if err := part(); err != nil {
 			return err
 		}
@@ -61,13 +62,13 @@ func (p *figurePage) header() error {
 	}
 	var b strings.Builder
 	fmt.Fprintf(&b, "%s\n%s\n\n", p.bold(safe(spec.Text("/title"))), safe(p.file.Path))
-	fmt.Fprintf(&b, "  %s at %s\n", strings.Join(kind, ", "), schema.Format(c.SwitchingFrequency, "Hz"))
-	fmt.Fprintf(&b, "  %s in, %s out, %s\n", p.extent("/input-voltage"), schema.Format(c.OutputVoltage, "V"), p.extent("/load/current"))
+	fmt.Fprintf(&b, "  %s at %s\n", strings.Join(kind, ", "), shown(c.SwitchingFrequency, "Hz"))
+	fmt.Fprintf(&b, "  %s in, %s out, %s\n", p.extent("/input-voltage"), shown(c.OutputVoltage, "V"), p.extent("/load/current"))
 	where := ""
 	if c.Topology.Isolated() {
-		where = fmt.Sprintf(" on the output side, turns ratio %s", schema.Format(turns, ""))
+		where = fmt.Sprintf(" on the output side, turns ratio %s", shown(turns, ""))
 	}
-	fmt.Fprintf(&b, "  inductance %s (%s to %s)%s\n", schema.Format(nominal, "H"), schema.Format(low, "H"), schema.Format(high, "H"), where)
+	fmt.Fprintf(&b, "  inductance %s (%s to %s)%s\n", shown(nominal, "H"), shown(low, "H"), shown(high, "H"), where)
 	for i, words := range p.assumed() {
 		label := "  assumed: "
 		if i > 0 {
@@ -86,9 +87,9 @@ func (p *figurePage) extent(pointer string) string {
 		return ""
 	}
 	if q.Min == q.Max {
-		return schema.Format(q.Nominal, q.Unit)
+		return shown(q.Nominal, q.Unit)
 	}
-	return schema.Format(q.Min, q.Unit) + " to " + schema.Format(q.Max, q.Unit)
+	return shown(q.Min, q.Unit) + " to " + shown(q.Max, q.Unit)
 }
 
 // assumed lists what the file leaves open and the figures stand on.
@@ -98,7 +99,7 @@ func (p *figurePage) assumed() []string {
 	for _, axis := range p.design.Axes {
 		pointer := "/" + strings.ReplaceAll(axis.Path, ".", "/")
 		if q, ok := spec.Quantity(pointer); ok && q.AssumedNominal {
-			out = append(out, fmt.Sprintf("%s %s nominal, the middle of its range", axis.Path, schema.Format(q.Nominal, q.Unit)))
+			out = append(out, fmt.Sprintf("%s %s nominal, the middle of its range", axis.Path, shown(q.Nominal, q.Unit)))
 		}
 	}
 	if !spec.Has("/load/behaviour") {
@@ -181,7 +182,7 @@ func cells(c *analysis.Corner) []string {
 	}
 	put := func(i int, v float64, unit string) {
 		if !math.IsNaN(v) && !math.IsInf(v, 0) {
-			out[i] = schema.Format(v, unit)
+			out[i] = shown(v, unit)
 		}
 	}
 	s := &c.Plant

@@ -39,7 +39,7 @@ func NewJSON(w io.Writer, version string) *JSON {
 // File adds one file's findings.
 func (j *JSON) File(f workspace.File) {
 	j.totals.Add(f)
-	out := fileOut{Path: clean(f.Path), Status: f.Status.String(), Findings: []findingOut{}}
+	out := fileOut{Path: clean(f.Path), Status: f.Status.String(), Findings: []findingOut{}, Outcomes: outcomesOf(f.Outcomes)}
 	for _, found := range f.Findings {
 		out.Findings = append(out.Findings, shape(found))
 	}
@@ -63,6 +63,22 @@ type fileOut struct {
 	Path     string       `json:"path"`
 	Status   string       `json:"status"`
 	Findings []findingOut `json:"findings"`
+	Outcomes []outcomeOut `json:"outcomes,omitempty"`
+}
+
+type outcomeOut struct {
+	Rule    string `json:"rule"`
+	Outcome string `json:"outcome"`
+	Reason  string `json:"reason,omitempty"`
+}
+
+// outcomesOf is what became of each rule.
+func outcomesOf(all []rules.Outcome) []outcomeOut {
+	var out []outcomeOut
+	for _, o := range all {
+		out = append(out, outcomeOut{o.Rule.Name, o.Status.Key(), o.Reason})
+	}
+	return out
 }
 
 type findingOut struct {

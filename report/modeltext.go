@@ -6,7 +6,6 @@ import (
 	"strings"
 
 	"halfplane/analysis/plant"
-	"halfplane/schema"
 )
 
 // model sets the first corner's small-signal model beside the closed forms without losses, then its poles and zeros.
@@ -51,11 +50,14 @@ func (p *figurePage) model() error {
 	if cl := s.Current; cl != nil {
 		t.row("current slope", dash(cl.OnSlope, "V/s"), "")
 		t.row("added slope", dash(cl.ExternalSlope, "V/s"), "")
+		t.row("slope ratio mc", dash(cl.SlopeRatio, ""), "")
+		t.row("mc·D′, above 1/2", dash(cl.OffDutyProduct, ""), "")
 		t.row("half-frequency quality", dash(cl.HalfFrequencyQuality, ""), "")
 	}
 	if in := s.Input; in != nil {
-		t.row("filter Zo/ZN", dash(in.ZoOverZn, ""), "")
-		t.row("filter Zo/ZD", dash(in.ZoOverZd, ""), "")
+		t.row("filter quality, alone", dash(in.Quality, ""), "")
+		t.row("filter Zo/ZN, largest", dash(in.ZoOverZn, ""), "")
+		t.row("filter Zo/ZD, largest", dash(in.ZoOverZd, ""), "")
 	}
 	if err := t.write(p.w, "  "); err != nil {
 		return err
@@ -76,7 +78,7 @@ func dash(v float64, unit string) string {
 	if math.IsNaN(v) || math.IsInf(v, 0) {
 		return "–"
 	}
-	return schema.Format(v, unit)
+	return shown(v, unit)
 }
 
 // rootWords lists roots by frequency: a pair with its quality, and what lies in the right half-plane said so.
@@ -87,9 +89,9 @@ func rootWords(of []complex128) string {
 			continue // its conjugate is told
 		}
 		hz := math.Hypot(real(r), imag(r)) / (2 * math.Pi)
-		words := schema.Format(hz, "Hz")
+		words := shown(hz, "Hz")
 		if imag(r) > 0 {
-			words += " (pair, quality " + schema.Format(math.Abs(math.Hypot(real(r), imag(r))/(2*real(r))), "") + ")"
+			words += " (pair, quality " + shown(math.Abs(math.Hypot(real(r), imag(r))/(2*real(r))), "") + ")"
 		}
 		if real(r) > 0 {
 			words += " in the right half-plane"

@@ -6,7 +6,6 @@ import (
 	"strings"
 
 	"halfplane/rules"
-	"halfplane/schema"
 )
 
 // Care stands on every page that could be taken for an approval.
@@ -45,17 +44,15 @@ func RulePage(w io.Writer, r *rules.Rule) error {
 		}
 	}
 	line("group", r.Group.String())
-	line("severity", r.Severity.String())
+	line("severity", r.Severities())
 	line("formula", r.Formula)
 	line("source", r.Source)
-	for i, t := range r.Policy {
-		label := ""
-		if i == 0 {
-			label = "policy"
-		}
-		words := fmt.Sprintf("%s (default %s)", strings.Replace(t.Key, ".", ", ", 1), schema.Format(t.Default, t.Unit))
-		fmt.Fprintf(&b, "%-10s%s\n", label, words)
+	label := "policy"
+	for _, p := range r.Defaults() {
+		line(label, fmt.Sprintf("%s (default %s)", p.Key, p.Value))
+		label = ""
 	}
+	line("finding", r.Hint)
 	if r.Example != "" {
 		fmt.Fprintf(&b, "\nA file that breaks it has, for example:\n\n%s\n", indent(strings.Trim(r.Example, "\n"), "    "))
 	}

@@ -4,7 +4,18 @@ import (
 	"io"
 	"strings"
 	"unicode/utf8"
+
+	"halfplane/schema"
 )
+
+// shown prints a figure with its unit to three significant digits; its sign is the minus of prose, U+2212.
+func shown(value float64, unit string) string {
+	printed := schema.Format(value, unit)
+	if after, negative := strings.CutPrefix(printed, "-"); negative {
+		return "−" + after
+	}
+	return printed
+}
 
 // table sets cells in columns: the first to the left, the others to the right, two blanks between.
 type table struct {

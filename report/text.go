@@ -4,6 +4,7 @@ import (
 	"bufio"
 	"fmt"
 	"io"
+	"strings"
 
 	"halfplane/rules"
 	"halfplane/schema"
@@ -30,6 +31,7 @@ type Text struct {
 	w      *bufio.Writer
 	o      TextOptions
 	totals Totals
+	corner string // that was told last
 }
 
 // NewText starts a report; Close ends it.
@@ -37,19 +39,42 @@ func NewText(w io.Writer, o TextOptions) *Text {
 	return &Text{w: bufio.NewWriter(w), o: o}
 }
 
-// File adds one file's findings. A consequence is set in under the finding that it follows from.
+// File adds one file's findings. A consequence is set in under the finding that it follows from; notes on rules that the same
+// reason keeps from being assessed at the same place are one block.
 func (t *Text) File(f workspace.File) {
 	t.totals.Add(f)
 	under := consequences(f.Findings)
+	told := make([]bool, len(f.Findings))
 	for i, found := range f.Findings {
-		if causeOf(f.Findings, i) >= 0 {
+		if causeOf(f.Findings, i) >= 0 || told[i] {
 			continue
 		}
-		t.finding(f.Path, found, "")
+		t.finding(f.Path, found, fold(f.Findings, i, told))
 		for _, j := range under[i] {
-			t.finding(f.Path, f.Findings[j], "    ")
+			if !told[j] {
+				t.consequence(f.Path, f.Findings[j], fold(f.Findings, j, told))
+			}
 		}
 	}
+}
+
+// fold lists the rules that the note at index i and the further ones of the same place, reason and cause are about, and marks
+// all of them as told; nil for any other finding.
+func fold(all []rules.Finding, i int, told []bool) []string {
+	told[i] = true
+	first := all[i]
+	if first.About == "" {
+		return nil
+	}
+	about := []string{first.About}
+	for j := i + 1; j < len(all); j++ {
+		f := all[j]
+		if f.About != "" && f.Reason == first.Reason && f.Pointer == first.Pointer && f.Severity == first.Severity && causeOf(all, j) == causeOf(all, i) {
+			about = append(about, f.About)
+			told[j] = true
+		}
+	}
+	return about
 }
 
 // Close writes the totals and gives the first error of writing.
@@ -60,22 +85,65 @@ func (t *Text) Close() error {
 	return t.w.Flush()
 }
 
-func (t *Text) finding(path string, f rules.Finding, indent string) {
-	at := schema.Position{Line: 1, Column: 1}
-	if f.Doc != nil {
-		at = f.Doc.Position(f.Start)
-	}
-	fmt.Fprintf(t.w, "%s%s: %s: %s\n", indent,
-		t.paint("1", fmt.Sprintf("%s:%d:%d", safe(path), at.Line, at.Column)),
-		t.paint(severityColor(f.Severity), f.Severity.String()), safe(f.Message))
+func (t *Text) finding(path string, f rules.Finding, about []string) {
+	const indent = ""
+	t.head(indent, path, f, folded(f, about))
 	t.line(indent, "rule", f.Rule)
+	t.list(indent, about)
 	t.line(indent, "worst", f.CornerWords)
+	t.corner = f.CornerWords
 	for _, r := range f.Related {
 		if r.Doc != nil && r.Doc != f.Doc {
 			p := r.Doc.Position(r.Start)
 			t.line(indent, "see", fmt.Sprintf("%s:%d:%d: %s", r.Doc.Name, p.Line, p.Column, r.Message))
 		}
 	}
+}
+
+// ruleWidth is the width to which a list of rules is wrapped.
+const ruleWidth = 100
+
+// consequence writes what follows from a cause in one line, with its rule, and its corner where that is another than the one
+// told last.
+func (t *Text) consequence(path string, f rules.Finding, about []string) {
+	const indent = "    "
+	t.head(indent, path, f, folded(f, about)+" ("+f.Rule+")")
+	t.list(indent, about)
+	if f.CornerWords != t.corner {
+		t.line(indent, "worst", f.CornerWords)
+		t.corner = f.CornerWords
+	}
+}
+
+// folded is a finding's message, that of several notes at once where it stands for them.
+func folded(f rules.Finding, about []string) string {
+	if len(about) < 2 {
+		return f.Message
+	}
+	return fmt.Sprintf("%d rules are not assessed: %s", len(about), f.Reason)
+}
+
+// list writes the rules that a folded note is about.
+func (t *Text) list(indent string, about []string) {
+	if len(about) < 2 {
+		return
+	}
+	label := "of"
+	for _, part := range atCommas(strings.Join(about, ", "), ruleWidth) {
+		t.line(indent, label, part)
+		label = ""
+	}
+}
+
+// head writes a finding's first line.
+func (t *Text) head(indent, path string, f rules.Finding, message string) {
+	at := schema.Position{Line: 1, Column: 1}
+	if f.Doc != nil {
+		at = f.Doc.Position(f.Start)
+	}
+	fmt.Fprintf(t.w, "%s%s: %s: %s\n", indent,
+		t.paint("1", fmt.Sprintf("%s:%d:%d", safe(path), at.Line, at.Column)),
+		t.paint(severityColor(f.Severity), f.Severity.String()), safe(message))
 }
 
 // line writes one of the indented lines under a finding; an empty one is left out.

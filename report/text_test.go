@@ -26,7 +26,7 @@ func outcome() workspace.File {
 	loop := rules.Finding{
 		Rule: "closed-loop-stability", Severity: rules.Error, Message: "the closed loop oscillates", Pointer: "/inductor/inductance", Doc: doc,
 		Corner: []analysis.Setting{{Path: "input-voltage", Value: 9}, {Path: "load.current", Value: 1.5}}, CornerWords: "9.00 V in, 1.50 A",
-		Measured: &rules.Number{Value: 4900, Unit: "Hz"}, Limit: &rules.Number{Value: 2620, Unit: "Hz"}, Formula: "4.90 kHz <= 2.62 kHz",
+		Measured: &rules.Number{Value: 4900, Unit: "Hz"}, Limit: &rules.Number{Value: 2620, Unit: "Hz"}, Formula: "fc ≤ 2.62 kHz; fc = 4.90 kHz",
 	}
 	loop.Start, loop.End = at("22 µH ± 20 %")
 	margin := rules.Finding{
@@ -51,8 +51,7 @@ func TestTextIsFileLineColumnWithConsequencesUnderTheirCause(t *testing.T) {
 shelf/a.converter.yaml:3:24: error: the closed loop oscillates
     rule   closed-loop-stability
     worst  9.00 V in, 1.50 A
-    shelf/a.converter.yaml:3:50: error: phase margin −5.00°
-        rule   phase-margin
+    shelf/a.converter.yaml:3:50: error: phase margin −5.00° (phase-margin)
 1 file: 1 error, 1 warning
 `, b.String())
 }
@@ -104,4 +103,24 @@ func TestWhatATerminalWouldObeyIsShown(t *testing.T) {
 	} {
 		assert.Equal(t, want, safe(in))
 	}
+}
+
+func TestNotesForTheSameReasonAtTheSamePlaceAreOneBlock(t *testing.T) {
+	f := outcome()
+	note := func(about, reason string) rules.Finding {
+		return rules.Finding{
+			Rule: "not-assessed", Severity: rules.Note, Message: about + " is not assessed: " + reason, About: about, Reason: reason,
+			Pointer: "/title", Doc: f.Document, Start: 10, End: 15,
+		}
+	}
+	f.Findings = []rules.Finding{note("gain-margin", "no model"), note("phase-margin", "no model"), note("divider-setpoint", "reference-voltage is not given")}
+	var b bytes.Buffer
+	require.NoError(t, TextFindings(&b, []workspace.File{f}, TextOptions{}))
+	assert.Equal(t, `shelf/a.converter.yaml:2:1: note: 2 rules are not assessed: no model
+    rule   not-assessed
+    of     gain-margin, phase-margin
+shelf/a.converter.yaml:2:1: note: divider-setpoint is not assessed: reference-voltage is not given
+    rule   not-assessed
+1 file: 3 notes
+`, b.String())
 }

@@ -7,7 +7,6 @@ import (
 	"unicode/utf8"
 
 	"halfplane/analysis"
-	"halfplane/schema"
 )
 
 // cornerWidth is the width to which the words of a corner are wrapped: with the columns before it about 120 characters.
@@ -27,7 +26,7 @@ func (p *figurePage) worst() error {
 		}
 		for i, part := range atCommas("at "+p.words(p.file.Result.Corners[of.Corner].At), cornerWidth) {
 			if i == 0 {
-				t.row(label, schema.Format(of.Value, unit), part)
+				t.row(label, shown(of.Value, unit), part)
 			} else {
 				t.row("", "", "   "+part)
 			}
@@ -45,7 +44,7 @@ func (p *figurePage) worst() error {
 		line("RHP zero, lowest", w.RHPZero, "Hz")
 		line("crossover / RHP zero", w.CrossoverOverRHPZero, "")
 		if r := w.HighestCrossoverOverLowestRHPZero; !math.IsNaN(r) {
-			t.row("", schema.Format(r, ""), "the highest crossover of all over the lowest zero of all, for information")
+			t.row("", shown(r, ""), "the highest crossover of all over the lowest zero of all, for information")
 		}
 	}
 	fmt.Fprintf(p.w, "\n%s\n", p.bold("Worst figures ("+p.file.Result.Method+")"))

@@ -15,7 +15,8 @@ var assumedNominal = Rule{
 	Sentence: "A range wider than 2 to 1 states its nominal value, so that nobody has to assume the midpoint.",
 	Formula:  "max ≤ 2 · min, or nominal is given",
 	Source:   "common practice",
-	Example:  "output-capacitor: {capacitance: 220 uF, esr: {min: 8 mΩ, max: 25 mΩ}}",
+	Example:  "output-capacitor: {capacitance: 220 uF, esr: {min: 8 mΩ, max: 25 mΩ}}   # 16.5 mΩ is assumed",
+	Hint:     "Nominal figures, and every stated figure, are computed with the midpoint. Write the value that the data sheet calls typical if it is another; the extremes stay as they are.",
 	Reads:    Declaration,
 	Decide: func(c *Case) []Finding {
 		var findings []Finding

@@ -14,7 +14,8 @@ var capacitorRippleCurrent = Rule{
 	Sentence: "The ripple current of one output capacitor stays within its rating at every corner.",
 	Formula:  "√(2·Σ|Ik|²)/count ≤ ripple-current-rating, Ik the harmonics of the current into the bank",
 	Source:   "common practice (Fourier series of the piecewise-linear output current, shared by the banks' admittances)",
-	Example:  "topology: boost\noutput-capacitor: {capacitance: 220 uF, ripple-current-rating: 0.9 A}   # 1.6 A rms at low input",
+	Example:  "topology: boost\noutput-capacitor: {capacitance: 220 uF ± 20 %, esr: 20 mΩ, count: 2, ripple-current-rating: 0.9 A}   # 1.6 A rms a piece at low input",
+	Hint:     "Measured is the current of one piece. Banks of different kinds share the current by their admittance at each harmonic, so that a film capacitor beside an electrolytic takes most of it.",
 	Reads:    Operation,
 	Applies:  func(c *Case) bool { return len(ratedBanks(c)) > 0 },
 	Decide: func(c *Case) []Finding {

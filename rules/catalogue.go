@@ -13,15 +13,15 @@ const BenchNote = "A clean check is no substitute for a loop measurement on the 
 func Page(r *Rule) string {
 	var b strings.Builder
 	fmt.Fprintf(&b, "# %s\n\n%s\n\n", r.Name, r.Sentence)
-	fmt.Fprintf(&b, "- group: %s (%s)\n- severity: %s unless a policy or the finding says otherwise\n", r.Group, r.Group.Sentence(), r.Severity)
+	fmt.Fprintf(&b, "- group: %s (%s)\n- severity: %s unless a policy or the finding says otherwise\n", r.Group, r.Group.Sentence(), r.Severities())
 	fmt.Fprintf(&b, "- holds when: %s\n- source: %s\n", r.Formula, r.Source)
-	for _, t := range r.Policy {
-		fmt.Fprintf(&b, "- policy key: `%s`, default %s\n", t.Key, t.words())
+	for _, p := range r.Defaults() {
+		fmt.Fprintf(&b, "- policy key: `%s`, default %s\n", p.Key, p.Value)
 	}
 	if len(r.Policy) == 0 {
 		fmt.Fprintf(&b, "- policy key: none\n")
 	}
-	fmt.Fprintf(&b, "\nBreaks it:\n\n```yaml\n%s\n```\n\n%s\n", r.Example, BenchNote)
+	fmt.Fprintf(&b, "\n%s\n\nBreaks it:\n\n```yaml\n%s\n```\n\n%s\n", r.Hint, r.Example, BenchNote)
 	return b.String()
 }
 
@@ -40,14 +40,32 @@ func Catalogue() string {
 				first = false
 			}
 			fmt.Fprintf(&b, "\n<a id=\"%s\"></a>\n### %s\n\n%s\n\n", r.Name, r.Name, r.Sentence)
-			fmt.Fprintf(&b, "| | |\n| --- | --- |\n| severity | %s |\n| holds when | %s |\n| source | %s |\n", r.Severity, cell(r.Formula), cell(r.Source))
-			for _, t := range r.Policy {
-				fmt.Fprintf(&b, "| policy key `%s` | default %s |\n", t.Key, t.words())
+			fmt.Fprintf(&b, "| | |\n| --- | --- |\n| severity | %s |\n| holds when | %s |\n| source | %s |\n", r.Severities(), cell(r.Formula), cell(r.Source))
+			for _, p := range r.Defaults() {
+				fmt.Fprintf(&b, "| policy key `%s` | default %s |\n", p.Key, p.Value)
 			}
-			fmt.Fprintf(&b, "\n```yaml\n%s\n```\n", r.Example)
+			fmt.Fprintf(&b, "\n%s\n\n```yaml\n%s\n```\n", r.Hint, r.Example)
 		}
 	}
 	return b.String()
+}
+
+// Default is a policy key with its built-in default, as a person writes both in a policy file.
+type Default struct{ Key, Value string }
+
+// Defaults lists a rule's policy keys; the two ends of a two-sided threshold are one key.
+func (r *Rule) Defaults() []Default {
+	var all []Default
+	for i, t := range r.Policy {
+		key, end, sided := strings.Cut(t.Key, ".")
+		switch {
+		case !sided:
+			all = append(all, Default{key, t.words()})
+		case end == "min" && i+1 < len(r.Policy):
+			all = append(all, Default{key, fmt.Sprintf("{min: %s, max: %s}", t.words(), r.Policy[i+1].words())})
+		}
+	}
+	return all
 }
 
 // words is a threshold's default as a person writes it in a policy.
@@ -60,7 +78,12 @@ func (t Threshold) words() string {
 	case t.Unit == "%":
 		return short(t.Default*100) + " %"
 	}
-	return number(t.Default, t.Unit)
+	printed := number(t.Default, t.Unit)
+	figure, unit, _ := strings.Cut(printed, " ")
+	if strings.Contains(figure, ".") {
+		figure = strings.TrimRight(strings.TrimRight(figure, "0"), ".")
+	}
+	return figure + " " + unit
 }
 
 // cell makes a text safe inside a Markdown table.

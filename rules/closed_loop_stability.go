@@ -11,7 +11,8 @@ var closedLoopStability = Rule{
 	Sentence: "Every closed-loop pole is in the left half-plane at every corner.",
 	Formula:  "Re s < 0 for every root of 1 + T(s) = 0",
 	Source:   "H. Nyquist, \"Regeneration theory\", Bell System Technical Journal 11 (1932)",
-	Example:  "compensator: {network: type-1, integrator-capacitor: 100p, …}   # crosses far above the resonance",
+	Example:  "compensator: {network: type-1, upper-resistor: 10k, integrator-capacitor: 100p}   # crosses far above the resonance",
+	Hint:     "Measured is the phase margin at the worst corner, negative by how much the loop is past the edge. The margins of that corner are listed below as consequences. A plant with right-half-plane poles of its own is named as such: then too little gain is as bad as too much.",
 	Reads:    Figures,
 	Place:    gainPart,
 	Decide: func(c *Case) []Finding {

@@ -15,7 +15,8 @@ var conditionalStability = Rule{
 	Formula:  "20·log10 |T| where T is real, negative and larger than one ≥ gain-reduction-margin; a loop without such a frequency holds",
 	Source:   "H. Nyquist, \"Regeneration theory\", Bell System Technical Journal 11 (1932); 10 dB is common practice",
 	Policy:   []Threshold{reductionMargin},
-	Example:  "compensator: {network: type-3, …}   # both zeros above the resonance: the phase passes −180° below crossover",
+	Example:  "compensator:   # both zeros above the resonance: the phase passes −180° below crossover\n  network: type-3\n  upper-resistor: 10k\n  feedback-resistor: 10k\n  integrator-capacitor: 220p\n  lead-resistor: 330R\n  lead-capacitor: 220p",
+	Hint:     "Measured is by how much the gain may fall. It does fall: at start-up, at a low input, and while the amplifier is at its stop. A plant that is unstable on its own always needs a least gain, and only the limit applies to it.",
 	Reads:    Figures,
 	Place:    gainPart,
 	Decide: func(c *Case) []Finding {

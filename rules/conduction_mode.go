@@ -14,10 +14,12 @@ var conductionMode = Rule{
 	Name:     "conduction-mode",
 	Group:    Operating,
 	Severity: Note,
+	Also:     []Severity{Warning},
 	Sentence: "Every corner has the conduction mode that is intended; without an intention, all corners have one mode.",
 	Formula:  "continuous where the load exceeds the critical current, at which the inductor current just touches zero",
 	Source:   "common practice",
-	Example:  "conduction: ccm\nload: {current: {min: 0.1 A, max: 2 A}}   # discontinuous below 0.6 A",
+	Example:  "conduction: ccm\nload: {current: {min: 0.1 A, nominal: 1 A, max: 2 A}}   # discontinuous below 0.6 A",
+	Hint:     "Measured is the load at the corner furthest into the other mode, the limit is the critical current there. The message gives the critical current at each input voltage with the parts of that corner. A loop in both modes is judged in both.",
 	Reads:    Operation,
 	Place: func(c *Case) string {
 		if c.Spec.Has("/conduction") && c.Spec.Text("/conduction") != "either" {

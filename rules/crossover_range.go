@@ -17,6 +17,7 @@ var crossoverRange = Rule{
 	Formula:  "targets.crossover.min ≤ fc ≤ targets.crossover.max",
 	Source:   "common practice",
 	Example:  "targets: {crossover: {min: 2 kHz, max: 6 kHz}}   # the corners spread from 1.4 kHz to 5.3 kHz",
+	Hint:     "Measured is the crossover furthest outside by ratio, the limit the end of the range that it passes. A plain number as target is the upper end.",
 	Reads:    Figures,
 	Place:    targetOrGainPart(crossoverTarget),
 	Applies:  func(c *Case) bool { return c.Spec.Has(crossoverTarget) },

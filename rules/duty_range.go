@@ -15,7 +15,8 @@ var dutyRange = Rule{
 	Sentence: "The duty that regulation needs exists and lies inside the duty limits at every corner, losses included.",
 	Formula:  "duty-limit.min ≤ D ≤ duty-limit.max, with vo(D) = V",
 	Source:   "R. D. Middlebrook, S. Ćuk, \"A general unified approach to modelling switching-converter power stages\", IEEE PESC (1976), for D with losses",
-	Example:  "modulator: {scheme: voltage-mode, ramp-amplitude: 1.8 V, duty-limit: {min: 0, max: 0.6}}   # 0.64 is needed at low input",
+	Example:  "topology: boost\ninput-voltage: {min: 9 V, nominal: 12 V, max: 16 V}\noutput-voltage: 24 V\nmodulator: {scheme: voltage-mode, ramp-amplitude: 1.8 V, duty-limit: {min: 0, max: 0.6}}   # 0.632 is needed at 9 V",
+	Hint:     "Measured is the duty at the worst corner with all losses; the closed form without losses stands in the formula. Where no duty reaches the output voltage there is no measured figure: less resistance, a higher input or another turns ratio is needed, and what other rules found beside that corner is listed below it.",
 	Reads:    Operation,
 	Place:    dutyLimit,
 	Decide: func(c *Case) []Finding {

@@ -18,7 +18,8 @@ var esrZeroSpread = Rule{
 	Formula:  "pole / esr-spread ≤ 1/(2π · ESR · C) ≤ pole · esr-spread, where the nominal zero lies below 5 · fc",
 	Source:   "common practice",
 	Policy:   []Threshold{esrSpread},
-	Example:  "output-capacitor: {capacitance: 220 uF, esr: {min: 8 mΩ, nominal: 40 mΩ, max: 160 mΩ}}",
+	Example:  "output-capacitor: {capacitance: 220 uF ± 20 %, esr: {min: 8 mΩ, nominal: 40 mΩ, max: 160 mΩ}}   # the zero moves by 20 to 1, the pole stays",
+	Hint:     "Measured is the end of the zero's range further from the pole. Uncancelled it bends the loop's phase and gain near crossover: see the margins at that corner.",
 	Reads:    Declaration,
 	Place:    func(c *Case) string { return largestBank(c).pointer + "/esr" },
 	Applies: func(c *Case) bool {

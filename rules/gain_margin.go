@@ -16,6 +16,7 @@ var gainMargin = Rule{
 	Source:   "H. Nyquist, \"Regeneration theory\", Bell System Technical Journal 11 (1932); 8 dB is common practice",
 	Policy:   []Threshold{gainMarginLimit},
 	Example:  "targets: {gain-margin: 12 dB}   # the loop has 9 dB",
+	Hint:     "Measured is how much more gain the worst corner bears. A loop whose phase never reaches −180° has none and holds.",
 	Reads:    Figures,
 	Place:    targetOrGainPart("/targets/gain-margin"),
 	Decide: margin{

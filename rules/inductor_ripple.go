@@ -12,7 +12,8 @@ var inductorRipple = Rule{
 	Formula:  "ripple-band.min ≤ peak-to-peak ripple / average of one phase ≤ ripple-band.max",
 	Source:   "common practice",
 	Policy:   []Threshold{rippleBandLow, rippleBandHigh},
-	Example:  "inductor: {inductance: 470 uH}   # ripple 3 % of the average: large, slow, and a small current signal",
+	Example:  "inductor: {inductance: 470 uH}   # ripple 3 % of the average",
+	Hint:     "Above the band the part carries much alternating flux and the load must be heavy to stay continuous; below it the part is large and slow and gives current mode little to compare. A flyback that runs deep in its ripple is a choice: widen the band in the policy.",
 	Reads:    Declaration,
 	Place:    here("/inductor/inductance"),
 	Applies: func(c *Case) bool {

@@ -16,6 +16,7 @@ var inductorSaturation = Rule{
 	Source:   "common practice",
 	Policy:   []Threshold{saturationHeadroom},
 	Example:  "inductor: {inductance: 22 uH ± 20 %, saturation-current: 5 A}   # 4.9 A at low input and full load",
+	Hint:     "Measured is the peak of one winding on its own side: average plus half the ripple, or the ripple in discontinuous conduction. The limit is the lowest saturation current less the headroom for load steps and heat.",
 	Reads:    Operation,
 	Applies: func(c *Case) bool {
 		return c.Spec.Has("/inductor/saturation-current") || c.Spec.Has("/second-inductor/saturation-current")

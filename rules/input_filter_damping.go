@@ -16,6 +16,7 @@ var inputFilterDamping = Rule{
 	Source:   "R. D. Middlebrook, \"Design techniques for preventing input filter oscillations\", Powercon 5 (1978)",
 	Policy:   []Threshold{filterQuality},
 	Example:  "input-filter: {inductance: 22 uH, resistance: 5 mΩ, capacitance: 10 uF, esr: 2 mΩ}   # no damping branch",
+	Hint:     "Measured is the quality of the sharpest pole pair with the converter taken away. A branch of three to five times the capacitance with a resistor near √(L/C) damps it.",
 	Reads:    Model,
 	Place:    firstOf("/input-filter/damping-resistance", "/input-filter"),
 	Applies:  func(c *Case) bool { return c.Spec.Has("/input-filter") },

@@ -9,6 +9,7 @@ var internal = Rule{
 	Sentence: "No rule and no analysis fails inside the program.",
 	Formula:  "program faults = 0",
 	Source:   "common practice",
-	Example:  "# no file should ever cause this; report it when you see it",
+	Example:  "title: no file should ever cause this",
+	Hint:     "It is a defect of the program, not of the design; the exit status is 3. Everything else was still checked. Report it with the file.",
 	Reads:    Declaration,
 }

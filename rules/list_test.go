@@ -29,6 +29,7 @@ func TestEveryRuleIsDeclaredWhole(t *testing.T) {
 			assert.NotEmpty(t, rule.Formula)
 			assert.NotEmpty(t, rule.Source)
 			assert.NotEmpty(t, rule.Example)
+			assert.True(t, strings.HasSuffix(rule.Hint, "."), "it says how to read a finding")
 			assert.GreaterOrEqual(t, rule.Group, Declared)
 			assert.GreaterOrEqual(t, rule.Severity, Note)
 			assert.NotZero(t, rule.Reads, "it says what it must know of a corner")
@@ -87,11 +88,12 @@ func TestEveryRuleHasAPage(t *testing.T) {
 	catalogue := Catalogue()
 	for _, rule := range All() {
 		page := Page(rule)
-		for _, part := range []string{rule.Name, rule.Sentence, rule.Formula, rule.Source, rule.Example, BenchNote} {
+		for _, part := range []string{rule.Name, rule.Sentence, rule.Formula, rule.Source, rule.Hint, rule.Example, BenchNote} {
 			assert.Contains(t, page, part)
 		}
 		for _, threshold := range rule.Policy {
-			assert.Contains(t, page, "`"+threshold.Key+"`")
+			key, _, _ := strings.Cut(threshold.Key, ".")
+			assert.Contains(t, page, "`"+key+"`")
 		}
 		assert.Contains(t, catalogue, `<a id="`+rule.Name+`"></a>`)
 	}

@@ -15,6 +15,7 @@ var lowFrequencyGain = Rule{
 	Source:   "common practice",
 	Policy:   []Threshold{dcError},
 	Example:  "compensator: {network: transfer-function, gain: 3, poles: [2 kHz]}   # no integrator",
+	Hint:     "Measured is the part of a disturbance, and of the set-point, that stays at zero frequency. The amplifier's open-loop gain and a transconductance's output resistance end an integrator.",
 	Reads:    Figures,
 	Place:    gainPart,
 	Decide: func(c *Case) []Finding {

@@ -15,6 +15,7 @@ var modulusMargin = Rule{
 	Source:   "common practice: a sensitivity peak of at most 2, which alone guarantees 29° and 6 dB",
 	Policy:   []Threshold{modulusMarginLimit},
 	Example:  "targets: {modulus-margin: 0.7}   # the loop comes as close as 0.55",
+	Hint:     "Measured is the shortest distance to −1, which bounds phase and gain margin together: 0.5 alone guarantees 29° and 6 dB. It finds loops that pass both yet come close in between.",
 	Reads:    Figures,
 	Place:    targetOrGainPart("/targets/modulus-margin"),
 	Decide: margin{

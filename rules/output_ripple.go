@@ -17,6 +17,7 @@ var outputRipple = Rule{
 	Formula:  "peak to peak of Σ Ik/Yk ≤ targets.output-ripple, Ik the harmonics of the output current, Yk the admittance of capacitors and load",
 	Source:   "common practice (Fourier series of the piecewise-linear output current; no equivalent series inductance)",
 	Example:  "targets: {output-ripple: 20 mV}   # 58 mV at low input and full load",
+	Hint:     "Measured is peak to peak, capacitance and ESR together, without equivalent series inductance: spikes of the probe loop are not in it.",
 	Reads:    Operation,
 	Place:    targetOrGainPart(outputRippleTarget),
 	Applies:  func(c *Case) bool { return c.Spec.Has(outputRippleTarget) },

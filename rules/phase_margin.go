@@ -15,6 +15,7 @@ var phaseMargin = Rule{
 	Source:   "H. Nyquist, \"Regeneration theory\", Bell System Technical Journal 11 (1932); 45° is common practice",
 	Policy:   []Threshold{phaseMarginLimit},
 	Example:  "targets: {phase-margin: 60 deg}   # the loop has 48°",
+	Hint:     "Measured is the smallest margin of all corners and crossovers, nominal the one with nominal parts: the difference is what tolerances cost. Negative means unstable.",
 	Reads:    Figures,
 	Place:    targetOrGainPart("/targets/phase-margin"),
 	Decide: margin{

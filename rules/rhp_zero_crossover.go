@@ -15,7 +15,8 @@ var rhpZeroCrossover = Rule{
 	Formula:  "fc ≤ rhp-zero-fraction · fz, both of the same corner",
 	Source:   "K. J. Åström, \"Limitations on control system performance\", European Journal of Control 6 (2000); the fraction of 1/5 is common practice",
 	Policy:   []Threshold{rhpZeroFraction},
-	Example:  "compensator: {network: type-3, feedback-resistor: 47k, …}   # crosses at a third of the zero",
+	Example:  "topology: boost\ncompensator:\n  network: type-3\n  upper-resistor: 100k ± 1 %\n  feedback-resistor: 47k ± 1 %   # crosses at a third of the zero; 24k at a sixth\n  integrator-capacitor: 10n ± 5 %\n  lead-resistor: 2k05 ± 1 %\n  lead-capacitor: 2n7 ± 5 %",
+	Hint:     "Measured is the crossover at the corner where it comes nearest to the zero of that same corner; the limit is the fraction of that zero. Lower the gain at crossover, or move the zero up with less inductance. The highest crossover over the lowest zero is told as information: they need not meet at one corner.",
 	Reads:    Figures,
 	Place:    gainPart,
 	Applies: func(c *Case) bool {

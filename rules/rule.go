@@ -88,6 +88,7 @@ type Rule struct {
 	Source   string // author, title, year, section; or "common practice"
 	Policy   []Threshold
 	Example  string // a YAML fragment that breaks it, for the rule's page
+	Hint     string // how to read its findings, for the rule's page
 	Applies  func(*Case) bool
 	Needs    []string // JSON pointers without which it cannot be assessed
 	Decide   func(*Case) []Finding
@@ -97,6 +98,15 @@ type Rule struct {
 	Place  func(*Case) string          // JSON pointer of its findings; nil where each finding has its own
 	// Unassessed names what else is missing for an assessment, "" when nothing is; nil: nothing ever is.
 	Unassessed func(*Case) string
+}
+
+// Severities names every severity that the rule's findings can have, the default first.
+func (r *Rule) Severities() string {
+	words := r.Severity.String()
+	for _, s := range r.Also {
+		words += " / " + s.String()
+	}
+	return words
 }
 
 // Case is an analysed design, as rules see it. Rules read it and write nothing.

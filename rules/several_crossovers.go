@@ -15,6 +15,7 @@ var severalCrossovers = Rule{
 	Formula:  "number of frequencies with |T| = 1 is one",
 	Source:   "common practice",
 	Example:  "input-filter: {inductance: 22 uH, capacitance: 10 uF}   # its dip cuts the gain through one twice more",
+	Hint:     "Measured is the count at the worst corner; the frequencies are listed. Every one of them has a margin, and the highest can jump from one to another with a small change of gain.",
 	Reads:    Figures,
 	Place:    gainPart,
 	Decide: func(c *Case) []Finding {

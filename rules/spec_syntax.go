@@ -10,6 +10,7 @@ var specSyntax = Rule{
 	Sentence: "The file can be read: valid UTF-8, well-formed YAML or JSON, each key once.",
 	Formula:  "one value for each key",
 	Source:   "YAML 1.2.2 (2021) and RFC 8259 (2017)",
-	Example:  "title: Tide gauge supply\ntitle: Tide gauge supply, second board",
+	Example:  "title: Tide gauge supply\ntitle: Tide gauge supply, second board   # the key stands twice",
+	Hint:     "It stands where reading stopped making sense: the second of two equal keys, the unclosed quote. Nothing else is judged until the file can be read.",
 	Reads:    Declaration,
 }

@@ -14,7 +14,8 @@ var switchingCrossover = Rule{
 	Formula:  "fc ≤ switching-fraction · ff",
 	Source:   "R. D. Middlebrook, S. Ćuk, \"A general unified approach to modelling switching-converter power stages\", IEEE PESC (1976), on the averaged model's range; the fraction of 1/5 is common practice",
 	Policy:   []Threshold{switchingFraction},
-	Example:  "switching-frequency: 100 kHz\ncompensator: {network: type-3, feedback-resistor: 100k, …}   # crosses at 40 kHz",
+	Example:  "switching-frequency: 100 kHz\ncompensator:\n  network: type-3\n  upper-resistor: 10k ± 1 %\n  feedback-resistor: 100k ± 1 %   # crosses at 40 kHz\n  integrator-capacitor: 1n ± 5 %\n  lead-resistor: 330R ± 1 %\n  lead-capacitor: 470p ± 5 %",
+	Hint:     "Measured is the highest crossover, the limit the fraction of the frequency at which the filter works (twice the switching frequency in bridges and push-pulls). Above it the averaged model promises more phase than there is.",
 	Reads:    Figures,
 	Place:    gainPart,
 	Decide: func(c *Case) []Finding {

@@ -24,7 +24,8 @@ func newFigures() *cobra.Command {
 		Use:   "figures FILE",
 		Short: "Operating points, models, poles and zeros, margins: at each corner and at worst",
 		Long: `figures analyses one design and prints its numbers: the operating corners with nominal parts, the power stage's model
-beside the closed forms without losses, and the worst figures over all corners and tolerances.
+beside the closed forms without losses, the models in force, the worst figures over all corners and tolerances, and
+what became of each rule: it holds, is broken, does not apply, or could not be assessed.
 
 ` + report.Definitions + `
 
@@ -35,7 +36,7 @@ Exit status: 0, or 2 for wrong usage or a file that could not be read, parsed or
 		Example: `  halfplane figures shelf/profiler.converter.yaml
   halfplane figures shelf/profiler.converter.yaml --as json --corners all
   halfplane figures shelf/profiler.converter.yaml --at 'input-voltage=9 V,load.current=1.5,inductor.inductance=26.4uH'`,
-		Args:              cobra.ExactArgs(1),
+		Args:              oneDesign,
 		ValidArgsFunction: completeDesigns,
 		RunE:              func(cmd *cobra.Command, args []string) error { return c.run(cmd, args[0]) },
 	}

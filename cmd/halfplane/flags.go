@@ -7,6 +7,7 @@ import (
 	"strings"
 
 	"github.com/spf13/cobra"
+	"github.com/spf13/pflag"
 
 	"halfplane/analysis"
 	"halfplane/rules"
@@ -118,6 +119,29 @@ func suggest(name string) string {
 		return fmt.Sprintf("; did you mean %q?", best)
 	}
 	return " ('halfplane rule' lists them)"
+}
+
+// suggestFlag adds to the error about an unknown flag the one that was probably meant.
+func suggestFlag(cmd *cobra.Command, err error) error {
+	name, unknown := strings.CutPrefix(err.Error(), "unknown flag: --")
+	if !unknown {
+		return err
+	}
+	name, _, _ = strings.Cut(name, "=")
+	var known []string
+	cmd.Flags().VisitAll(func(f *pflag.Flag) { known = append(known, f.Name) })
+	if best := schema.Nearest(name, known); best != "" {
+		return fmt.Errorf("%w; did you mean --%s?", err, best)
+	}
+	return err
+}
+
+// oneDesign is the arguments of a command that takes one design.
+func oneDesign(cmd *cobra.Command, args []string) error {
+	if len(args) == 1 {
+		return nil
+	}
+	return fmt.Errorf("%s takes one design (NAME.converter.yaml), and %d were given", cmd.Name(), len(args))
 }
 
 // completeRules offers the rules' names.

@@ -73,6 +73,7 @@ read, parsed or validated; 3 a defect of the program itself. When several apply,
 		SilenceUsage:      true,
 		CompletionOptions: cobra.CompletionOptions{HiddenDefaultCmd: false},
 	}
+	root.SetFlagErrorFunc(suggestFlag)
 	root.SetVersionTemplate("halfplane {{.Version}}\n")
 	root.AddCommand(newCheck(), newFigures(), newRule(), newSchema(), newServe(), newDemo())
 	return root

@@ -14,6 +14,7 @@ var VARIABLE = Rule{
 	Formula:  "measured <= limit",
 	Source:   "common practice",
 	Example:  "inductor: {inductance: 22 uH}   # what is wrong with it",
+	Hint:     "Measured is …, the limit …; what helps.",
 	Reads:    Figures,
 	Place:    gainPart,
 	Applies:  func(*Case) bool { return true },
