@@ -55,6 +55,7 @@ func statedAmplifier(c *Case) []Finding {
 	f.Formula = fmt.Sprintf("arg(C ideal / C finite) at %s = %s", number(fc, "Hz"), number(lag, "deg"))
 	f.Measured, f.Limit = asNumber(lag, "deg"), asNumber(limit, "deg")
 	f.Nominal = asNumber(amplifierLag(&c.Design.Nominal.Network, crossover(c.nominal())), "deg")
+	c.relate(&f, "sets the gain at crossover", gainPart(c))
 	return []Finding{f}
 }
 
@@ -82,6 +83,7 @@ func assumedAmplifier(c *Case) []Finding {
 	f.Measured, f.Limit = asNumber(lag, "deg"), asNumber(limit, "deg")
 	nominalLag, _ := lagWith(c, c.nominal(), assumed)
 	f.Nominal = asNumber(nominalLag, "deg")
+	c.relate(&f, "sets the gain at crossover", gainPart(c))
 	return []Finding{f}
 }
 

@@ -27,6 +27,7 @@ var optocouplerPole = Rule{
 		if !stated {
 			f := c.at("/compensator/network")
 			f.Message = "the optocoupler's pole is not stated: the loop is computed without it, and real ones lie at a few tens of kilohertz"
+			c.relate(&f, "makes the pole with the optocoupler's own capacitance", "/compensator/pull-up-resistor")
 			return []Finding{f}
 		}
 		corner, fc := c.worst(crossover)

@@ -82,8 +82,9 @@ const (
 type Rule struct {
 	Name     string
 	Group    Group
-	Severity Severity // the default; a finding of a rule with two severities states its own
-	Sentence string   // what good looks like
+	Severity Severity   // the default; a finding of a rule with two severities states its own
+	Also     []Severity // the further ones that its findings can have
+	Sentence string     // what good looks like
 	Formula  string
 	Source   string // author, title, year, section; or "common practice"
 	Policy   []Threshold

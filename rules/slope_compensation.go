@@ -56,7 +56,7 @@ var slopeCompensation = Rule{
 			return nil
 		}
 		inner := corner.Plant.Current
-		f.Formula = fmt.Sprintf("mc = 1 + Se/Sn = 1 + %s/%s = %s; mc · (1 − D) = %s · (1 − %s) = %s, above 1/2; Q = 1/(π · (%s − 1/2)) = %s",
+		f.Formula = fmt.Sprintf("mc = 1 + Se/Sn = 1 + %s/%s = %s; mc · (1 − D) = %s · (1 − %s) = %s, which must be above 1/2; Q = 1/(π · (%s − 1/2)) = %s",
 			number(inner.ExternalSlope, "V/s"), number(inner.OnSlope, "V/s"), short(inner.SlopeRatio), short(inner.SlopeRatio), short(corner.Plant.Duty), short(product),
 			short(product), short(quality))
 		c.relate(&f, "decides the slopes", "/modulator/current-sense-gain", "/inductor/inductance", "/input-voltage", "/output-voltage", "/magnetizing-inductance")

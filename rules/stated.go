@@ -117,7 +117,7 @@ func statedFinding(c *Case, corner *analysis.Corner, figure statedFigure, stated
 	if slip != "" {
 		f.Message += ": it fits " + slip
 	}
-	f.Formula = fmt.Sprintf("%s / %s = %s, within 1 ± %s", number(stated, figure.unit), number(got, figure.unit), short(math.Abs(stated)/got), short(c.threshold(statedTolerance)))
+	f.Formula = fmt.Sprintf("%s / %s = %s; it should be within 1 ± %s", number(stated, figure.unit), number(got, figure.unit), short(math.Abs(stated)/got), short(c.threshold(statedTolerance)))
 	f.Measured, f.Limit, f.Nominal = asNumber(stated, figure.unit), asNumber(got, figure.unit), asNumber(got, figure.unit)
 	c.relate(&f, "decides the figure", "/turns", "/inductor/inductance", "/inductor/side", "/input-voltage", "/output-voltage")
 	return f

@@ -41,6 +41,9 @@ func voltageSum(c *Case, k *analysis.Corner, symbols string) string {
 	circuit := c.circuit(k.At)
 	numbers := strings.NewReplacer("Vg", number(circuit.InputVoltage, "V"), "V", number(circuit.OutputVoltage, "V"),
 		"n", number(circuit.TurnsSecondary/circuit.TurnsPrimary, ""))
+	if !strings.ContainsAny(symbols, "+·/(") { // the corner's number alone
+		return symbols
+	}
 	return symbols + " = " + numbers.Replace(symbols)
 }
 
