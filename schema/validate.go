@@ -18,10 +18,10 @@ const (
 )
 
 // Validate judges a document against the schema of its kind and gives all its problems at once, those of its syntax
-// included, sorted by place. References are followed through r. The spec is nil unless the document is a design without
+// included, sorted by place; a text that does not parse has no others. References are followed through r. The spec is nil unless the document is a design without
 // any problem.
 func Validate(doc *Document, r Resolver) (*Spec, []Problem) {
-	if doc.Root == nil || doc.Root.Kind != Mapping {
+	if doc.Root == nil || doc.Root.Kind != Mapping || torn(doc) {
 		return nil, doc.Problems
 	}
 	g := newGrower(doc, r)
@@ -30,7 +30,7 @@ func Validate(doc *Document, r Resolver) (*Spec, []Problem) {
 	if doc.Kind == Design || doc.Kind == Compensator {
 		g.follow(root, f)
 	}
-	v := &validation{grower: g, root: root, field: f, torn: torn(doc)}
+	v := &validation{grower: g, root: root, field: f}
 	v.check()
 	problems := v.finish()
 	if len(problems) > 0 || doc.Kind != Design {
@@ -39,7 +39,8 @@ func Validate(doc *Document, r Resolver) (*Spec, []Problem) {
 	return newSpec(g, root, f), nil
 }
 
-// torn tells a document in whose tree something may be missing because of its syntax. A duplicate key tears nothing.
+// torn tells a document that does not parse: of its tree only what stands before and behind the mistakes is known. A
+// duplicate key tears nothing.
 func torn(doc *Document) bool {
 	for _, p := range doc.Problems {
 		if doc.Find(p.Pointer) == nil || len(p.Related) == 0 {
@@ -54,7 +55,6 @@ type validation struct {
 	*grower
 	root  *Node
 	field *field
-	torn  bool
 	seen  map[string]bool // problems that were reported, by place and text
 	spent map[*Node]bool  // values whose key is not used: nothing inside them is worth a word
 	// tables are the keys of large mappings.

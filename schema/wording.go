@@ -190,9 +190,6 @@ func (v *validation) onKey(s *site, e *Entry, message string) {
 
 // missing reports that the mapping at s needs a key, at the mapping's own key.
 func (v *validation) missing(s *site, key, because string) {
-	if v.torn {
-		return
-	}
 	message := fmt.Sprintf("%s needs '%s'%s", owner(s), key, because)
 	if s.above == nil {
 		message = fmt.Sprintf("'%s' is missing", key)
