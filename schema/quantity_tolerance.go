@@ -17,7 +17,7 @@ func parseTolerance(text string) (minus, plus float64, f *fault) {
 			return t, t, f
 		}
 	}
-	if s == "" || !strings.ContainsAny(s[:1], "+-\xe2") { // the last is the first byte of U+2212
+	if strings.IndexAny(s, "+-\u2212") != 0 {
 		t, f := symmetric(s, text)
 		return t, t, f
 	}
