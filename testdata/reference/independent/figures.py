@@ -80,10 +80,10 @@ def loop_figures(s, poles, zeros, response, fm, point, coarse=False):
     if sampled:
         top = q["sampling-frequency"] / 2 * (1 - 1e-12)
         high = min(high, top)
-    curve = loop.Curve(gain, bottom, top, sharp, per_decade=25 if coarse else 60, finest=0.4 if coarse else 0.25)
+    curve = loop.Curve(gain, bottom, top, sharp, [low, high], per_decade=25 if coarse else 60, finest=0.4 if coarse else 0.25)
     origin = network.integrators(q)
     excess = 0
-    if not sampled and not delay:  # the slope of |T| at the far end, never below 0 in this count
+    if not sampled and not delay and abs(curve.t[-1]) > 1e-6:  # the slope of |T| at the far end, never below 0 in this count
         slope = np.log(abs(curve.t[-1] / curve.t[-2])) / np.log(curve.f[-1] / curve.f[-2])
         excess = max(0, int(round(slope)))
     unstable = int(np.sum(np.real(poles) > 0)) + network.unstable_poles(q)
@@ -116,7 +116,7 @@ def resonance(s, p):
     a, b = sorted(poles.real, key=abs)[:2]
     if a * b < 0:
         return None, None
-    return math.sqrt(a * b) / (2 * np.pi), -math.sqrt(a * b) / (a + b)
+    return math.sqrt(a * b) / (2 * np.pi), math.sqrt(a * b) / abs(a + b)
 
 
 def ideal(s, p):
@@ -151,7 +151,7 @@ def filter_ratios(s, p, modulator, c):
     inductance, resistance, shunts = s.filter
     bare = s.without_filter(p.terminal)
     if p.mode == "ccm":
-        inner = model.continuous(bare, p.duty)
+        inner = model.continuous(bare, p.duty, p.x[:len(p.x) - 1 - len(shunts)])
     else:
         inner = model.Point()
         inner.mode, inner.duty, inner.peak, inner.terminal = "dcm", p.duty, p.peak, p.terminal

@@ -11,10 +11,10 @@ from scipy.optimize import brentq, minimize_scalar
 class Curve:
     """T on a grid that is refined until neither magnitude nor angle, of T or 1 + T, jumps."""
 
-    def __init__(self, gain, low, high, pairs=(), per_decade=60, finest=0.25):
+    def __init__(self, gain, low, high, pairs=(), marks=(), per_decade=60, finest=0.25):
         self.gain = gain
         decades = np.log10(high / low)
-        grid = [np.geomspace(low, high, int(per_decade * decades) + 2)]
+        grid = [np.geomspace(low, high, int(per_decade * decades) + 2), np.array(marks)]
         for pole in pairs:  # lightly damped poles and zeros (rad/s): points at multiples of their half-width
             f, width = abs(pole) / (2 * np.pi), max(abs(pole.real), 1e-9 * abs(pole)) / (2 * np.pi)
             offsets = np.concatenate([[0], np.geomspace(0.02, max(30, 0.5 * f / width), 60)]) * width
@@ -88,7 +88,7 @@ def margins(curve, low, high, stable):
     inner = np.arange(1, len(f) - 1)
     valleys = inner[(distance[1:-1] <= distance[:-2]) & (distance[1:-1] <= distance[2:]) & (distance[1:-1] < 1.3 * least + 0.05)]
     for i in valleys:
-        found = minimize_scalar(lambda u: abs(1 + curve.one(np.exp(u))), bounds=(np.log(f[i - 1]), np.log(f[i + 1])),
+        found = minimize_scalar(lambda u: abs(1 + curve.one(np.exp(u))), bounds=(np.log(f[max(i - 2, 0)]), np.log(f[min(i + 2, len(f) - 1)])),
                                 method="bounded", options={"xatol": 1e-9})
         least = min(least, found.fun)
     return {"crossovers": crossovers, "crossover": crossovers[-1] if crossovers else None, "phase-margin": phase,

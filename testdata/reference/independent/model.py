@@ -8,7 +8,6 @@ IEEE Trans. Power Electronics 16(4), 2001, linearised numerically by complex ste
 Conventions: at the operating point the load is a current; the small-signal matrices contain its conductance.
 """
 import numpy as np
-import scipy.linalg
 from scipy.optimize import brentq, fsolve, minimize_scalar
 
 import circuit
@@ -43,16 +42,23 @@ class Linear:
 
 
 def zeros(a, b, c, e):
-    """Return the invariant zeros: finite generalised eigenvalues of the pencil [A b; c e] − s [I 0; 0 0]."""
+    """Return the invariant zeros of (A, b, c, e): the eigenvalues of A − b c/e where e ≠ 0.
+
+    Without feed-through y is replaced by y' + α y, which has the same zeros and one at −α, until there is one.
+    """
     n = len(a)
     w0 = np.exp(np.mean(np.log(np.maximum(np.abs(np.linalg.eigvals(a)), 1e-6))))
     size = np.maximum(np.linalg.norm(np.linalg.solve(a / w0 - np.eye(n) * 0.7j, b.astype(complex)[:, None]), axis=1), 1e-300)
     a, b, c = a / w0 * size[None, :] / size[:, None], b / w0 / size, c * size
-    top = max(np.abs(c).max(), abs(e))
-    pencil = np.block([[a, b[:, None] / np.abs(b).max()], [c[None, :] / top, np.array([[e / top / np.abs(b).max()]])]])
-    mass = np.diag([1.0] * n + [0.0])
-    alpha, beta = scipy.linalg.eig(pencil, mass, right=False, homogeneous_eigvals=True)
-    found = [p / q for p, q in zip(alpha, beta) if abs(q) > 1e-9 * abs(p)]
+    added = []
+    while abs(e) <= 1e-11 * np.sum(np.abs(c) * np.abs(b)) or e == 0:
+        if len(added) == n:
+            return np.array([])
+        added.append(-1.2345 * 1.1 ** len(added))
+        c, e = c @ a - added[-1] * c, c @ b
+    found = list(np.linalg.eigvals(a - np.outer(b, c) / e))
+    for z in added:
+        found.remove(min(found, key=lambda w: abs(w - z)))
     return np.array(found) * w0
 
 
@@ -124,11 +130,12 @@ def duty_peak(s):
     return float(minimize_scalar(lambda q: -volts(q), bounds=(d[i - 1], d[i + 1]), method="bounded", options={"xatol": 1e-10}).x)
 
 
-def continuous(s, d):
-    """Return the operating point in continuous conduction with its duty model."""
+def continuous(s, d, x=None):
+    """Return the operating point in continuous conduction with its duty model, around a state other than its own if given."""
     p = Point()
     p.duty, p.mode = d, "ccm"
-    x, _ = steady(s, d)
+    if x is None:
+        x, _ = steady(s, d)
     g = s.g
     on, off = circuit.part(s, ON, g), circuit.part(s, OFF, g)
     u = s.inputs(g)
