@@ -26,7 +26,10 @@ var lowFrequencyGain = Rule{
 		}
 		f := c.atCorner(gainPart(c), corner)
 		f.Message = fmt.Sprintf("the loop's direct-current gain %s leaves an error of %s, limit %s", number(corner.Loop.DCGain, ""), percent(dcErrorOf(corner)), percent(limit))
-		if len(corner.Loop.Crossovers) == 0 {
+		switch none := len(corner.Loop.Crossovers) == 0; {
+		case none && corner.Loop.DCGain > 1:
+			f.Message = "the loop gain is still above one at the end of the band in which it means anything: it never crosses one"
+		case none:
 			f.Message = fmt.Sprintf("the loop gain never reaches one: the output is not regulated (direct-current gain %s, error %s, limit %s)",
 				number(corner.Loop.DCGain, ""), percent(dcErrorOf(corner)), percent(limit))
 		}

@@ -33,7 +33,8 @@ func (m *Meter) Measure(t *transfer.Product, filterFrequency float64, out *Figur
 	k.crossovers = out.Crossovers[:0]
 	k.first, k.last, k.limit = 2*math.Pi*1e-6*filterFrequency, 2*math.Pi*10*filterFrequency, math.Inf(1)
 	if k.period > 0 {
-		k.limit = math.Pi / k.period
+		// A hair below half the sampling frequency: there the curve is on the real axis, and the side it comes from counts.
+		k.limit = math.Pi / k.period * (1 - 1e-9)
 		k.last = math.Min(k.last, k.limit)
 		k.first = math.Min(k.first, k.last/2)
 	}

@@ -21,10 +21,14 @@ func (k *walker) fromOrigin(n *node) float64 {
 }
 
 // toInfinity counts the crossings from the last node to s → ∞ on the positive real axis. A sampled loop ends at half its sampling
-// frequency; a loop gain that falls crosses nothing beyond −1 any more.
+// frequency, where the curve meets its mirror image: one that is still above 1 there closes across the nearer half of the
+// real axis. A loop gain that falls crosses nothing beyond −1 any more.
 func (k *walker) toInfinity(n *node) float64 {
-	if k.period > 0 || n.g <= 0 {
+	if n.g <= 0 {
 		return 0
+	}
+	if k.period > 0 {
+		return turns(n.theta, math.Pi*math.Round(n.theta/math.Pi))
 	}
 	degree := k.degree()
 	if degree < 0 {
