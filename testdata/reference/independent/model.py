@@ -59,7 +59,9 @@ def zeros(a, b, c, e):
     found = list(np.linalg.eigvals(a - np.outer(b, c) / e))
     for z in added:
         found.remove(min(found, key=lambda w: abs(w - z)))
-    return np.array(found) * w0
+    # Rounding leaves zeros that lie at infinity at a finite, meaningless place.
+    furthest = 1e6 * np.max(np.abs(np.linalg.eigvals(a)))
+    return np.array([z for z in found if abs(z) < furthest]) * w0
 
 
 class Point:
