@@ -57,6 +57,9 @@ func (s *Stage) secondOrder(x *steady, out *Solution) {
 // resonance returns frequency (Hz) and quality of two poles (rad/s): |p|/2π and |p|/(−2 Re p) of a conjugate pair, √(p1 p2)/2π and
 // √(p1 p2)/|p1+p2| of two real ones. A quality without bound (no damping) is NaN.
 func resonance(p, q complex128) (frequency, quality float64) {
+	if imag(p) == 0 && (real(p) < 0) != (real(q) < 0) {
+		return math.NaN(), math.NaN() // a saddle (constant-power load): nothing oscillates
+	}
 	m := math.Sqrt(math.Hypot(real(p), imag(p))) * math.Sqrt(math.Hypot(real(q), imag(q)))
 	quality = m / -(real(p) + real(q))
 	if imag(p) == 0 {
