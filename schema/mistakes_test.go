@@ -1,6 +1,7 @@
 package schema
 
 import (
+	"errors"
 	"math/rand/v2"
 	"os"
 	"path/filepath"
@@ -181,4 +182,29 @@ func TestLargeHostileFilesAreJudgedInTime(t *testing.T) {
 			assert.Less(t, taken, 20*time.Second, "linear in the size of the file takes half a second here")
 		})
 	}
+}
+
+// TestReferenceAstrayIsOneProblem: a part that is overridden beside a `use` that leads nowhere is no second mistake.
+func TestReferenceAstrayIsOneProblem(t *testing.T) {
+	text := `format: 1
+title: Skiff lamp
+topology: boost
+switching-frequency: 250 kHz
+input-voltage: 12 V
+output-voltage: 24 V
+load: {current: 1 A}
+inductor: {inductance: 22 uH}
+output-capacitor: {capacitance: 220 uF}
+modulator: {scheme: voltage-mode, ramp-amplitude: 1.8 V}
+compensator: {use: nowhere.compensator.yaml, lead-capacitor: 2n2 ± 5 %}
+`
+	_, problems := Validate(Read("lamp.converter.yaml", []byte(text), 0), nowhere{})
+	require.Len(t, problems, 1)
+	assert.Equal(t, "/compensator/use", problems[0].Pointer)
+}
+
+type nowhere struct{}
+
+func (nowhere) Resolve(*Document, string) (*Document, error) {
+	return nil, errors.New("there is no such file")
 }

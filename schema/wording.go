@@ -91,7 +91,8 @@ func (v *validation) word(l leaf) {
 			v.missing(s, key, "")
 		}
 	case "dependentRequired":
-		if names := quoted(l.message); len(names) > 0 && !v.spent[s.node.Get(l.below)] {
+		astray := !v.resolved[s.node] && (s.node.Get("use") != nil || s.node.Get("part") != nil) // what it brings is not known
+		if names := quoted(l.message); len(names) > 0 && !astray && !v.spent[s.node.Get(l.below)] {
 			v.missing(s, names[0], fmt.Sprintf(" beside '%s'", l.below))
 		}
 	case "anyOf":
