@@ -15,16 +15,7 @@ import (
 // Program is the name that the outputs carry.
 const Program = "halfplane"
 
-// JSONFindings writes the findings of the files as one JSON document (schema: FindingsSchema).
-func JSONFindings(w io.Writer, files []workspace.File, version string) error {
-	j := NewJSON(w, version)
-	for _, f := range files {
-		j.File(f)
-	}
-	return j.Close()
-}
-
-// JSON gathers findings file by file; Close writes the document.
+// JSON gathers findings file by file; Close writes the document (schema: FindingsSchema).
 type JSON struct {
 	w      io.Writer
 	out    findingsDocument

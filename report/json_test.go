@@ -3,6 +3,7 @@ package report
 import (
 	"bytes"
 	"encoding/json"
+	"io"
 	"math"
 	"testing"
 
@@ -28,6 +29,15 @@ func fits(t *testing.T, schemaText, text []byte) {
 	require.NoError(t, compiled.Validate(v), string(text))
 }
 
+// jsonFindings writes the findings of the files as the commands do.
+func jsonFindings(w io.Writer, files []workspace.File, version string) error {
+	j := NewJSON(w, version)
+	for _, f := range files {
+		j.File(f)
+	}
+	return j.Close()
+}
+
 func TestFindingsFitTheirSchema(t *testing.T) {
 	var b bytes.Buffer
 	none := schema.Read("gone.converter.yaml", nil, 0)
@@ -36,16 +46,16 @@ func TestFindingsFitTheirSchema(t *testing.T) {
 		{Path: "gone.converter.yaml", Document: none, Status: workspace.Unreadable, Findings: []rules.Finding{{Rule: "spec-syntax", Severity: rules.Error, Message: "there is no such file", Doc: none}}},
 		{Path: "quiet.parts.yaml", Status: workspace.Checked},
 	}
-	require.NoError(t, JSONFindings(&b, files, "1.2.3"))
+	require.NoError(t, jsonFindings(&b, files, "1.2.3"))
 	fits(t, FindingsSchema(), b.Bytes())
 	b.Reset()
-	require.NoError(t, JSONFindings(&b, nil, "1.2.3"))
+	require.NoError(t, jsonFindings(&b, nil, "1.2.3"))
 	fits(t, FindingsSchema(), b.Bytes())
 }
 
 func TestFindingsCountCodePointsAndLeaveOutWhatDoesNotApply(t *testing.T) {
 	var b bytes.Buffer
-	require.NoError(t, JSONFindings(&b, []workspace.File{outcome()}, "1.2.3"))
+	require.NoError(t, jsonFindings(&b, []workspace.File{outcome()}, "1.2.3"))
 	var got struct {
 		Files []struct {
 			Path, Status string

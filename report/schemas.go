@@ -8,7 +8,7 @@ var findingsSchema []byte
 //go:embed schemas/figures.json
 var figuresSchema []byte
 
-// FindingsSchema is the JSON Schema of what JSONFindings writes.
+// FindingsSchema is the JSON Schema of what JSON writes.
 func FindingsSchema() []byte { return findingsSchema }
 
 // FiguresSchema is the JSON Schema of what JSONFigures writes.

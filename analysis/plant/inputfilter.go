@@ -30,23 +30,18 @@ func (s *Stage) filterRatios(c *Circuit, x *steady, out *Solution) error {
 
 // filterStudy prepares the study of a stage in continuous conduction.
 func (s *Stage) filterStudy(c *Circuit, x *steady, out *Solution) filterStudy {
-	bare := *s
-	bare.HasFilter, bare.Input = false, x.terminal
-	f := filterStudy{stage: s, m: bare.average(x)}
+	f := s.studyOf(s.without(x.terminal).average(x))
 	if c.Modulator.Scheme == PeakCurrentMode {
 		f.law = s.loopTerms(x, out.Current)
 	} else if c.Modulator.FeedForward {
 		f.ahead = x.duty / x.terminal
 	}
-	f.a = f.m.states()
 	return f
 }
 
 // filterRatiosOfPulse fills Input in discontinuous conduction.
 func (s *Stage) filterRatiosOfPulse(c *Circuit, p pulse, out *Solution) error {
-	bare := *s
-	bare.HasFilter, bare.Input = false, p.terminal
-	f := filterStudy{stage: s, m: bare.averagePulse(p)}
+	f := s.studyOf(s.without(p.terminal).averagePulse(p))
 	if c.Modulator.Scheme == PeakCurrentMode {
 		f.law = s.pulseTerms(p, out.Current)
 	} else if c.Modulator.FeedForward {
@@ -55,9 +50,18 @@ func (s *Stage) filterRatiosOfPulse(c *Circuit, p pulse, out *Solution) error {
 	return f.fill(out)
 }
 
+// without is the stage without its input filter, fed with the terminal voltage.
+func (s *Stage) without(terminal float64) *Stage {
+	bare := *s
+	bare.HasFilter, bare.Input = false, terminal
+	return &bare
+}
+
+// studyOf starts the study of a stage from the linear model of its bare self.
+func (s *Stage) studyOf(m *linear) filterStudy { return filterStudy{stage: s, m: m, a: m.states()} }
+
 // fill finds the largest ratios up to half the filter frequency and the filter's own worst quality.
 func (f *filterStudy) fill(out *Solution) error {
-	f.a = f.m.states()
 	own, err := f.stage.filterPoles()
 	if err != nil {
 		return err

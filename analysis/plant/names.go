@@ -58,12 +58,6 @@ func ParseScheme(text string) (Scheme, bool) {
 	return Scheme(v), ok
 }
 
-// ParseMode finds the conduction mode called "ccm" or "dcm".
-func ParseMode(text string) (Mode, bool) {
-	v, ok := find(modeNames[:], text)
-	return Mode(v), ok
-}
-
 // Topologies lists every topology in the order of the spec format.
 func Topologies() []Topology {
 	all := make([]Topology, 0, len(topologyNames)-1)
