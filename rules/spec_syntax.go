@@ -11,6 +11,6 @@ var specSyntax = Rule{
 	Formula:  "one value for each key",
 	Source:   "YAML 1.2.2 (2021) and RFC 8259 (2017)",
 	Example:  "title: Tide gauge supply\ntitle: Tide gauge supply, second board   # the key stands twice",
-	Hint:     "It stands where reading stopped making sense: the second of two equal keys, the unclosed quote. Nothing else is judged until the file can be read.",
+	Hint:     "It stands where reading stopped making sense: the second of two equal keys, the unclosed quote. Beside a key that stands twice the rest of the file is still judged; any other mistake of syntax has to go first.",
 	Reads:    Declaration,
 }
