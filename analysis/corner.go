@@ -33,10 +33,13 @@ type Worsts struct {
 
 // Result is what an analysis says. Corners[0] is nominal (nominal input, load and parts); then come the operating corners
 // with nominal parts ({min,max} input × {min,max} load, and nominal input at full load, without repeats), Operating of
-// them; then everything else that was analysed.
+// them; then the extremes of what stores energy, the worst points of every figure, and with Options.KeepAll everything else
+// that was analysed.
 type Result struct {
 	Corners   []Corner
 	Operating int
 	Worst     Worsts
-	Method    string // e.g. "extreme-value, 576 corners, refined"
+	Analysed  int    // points evaluated, kept or not
+	Complete  bool   // every extreme of every tolerance that moves the loop was visited at every operating corner
+	Method    string // e.g. "extreme-value, 20576 corners, refined"
 }

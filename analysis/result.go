@@ -1,7 +1,7 @@
 package analysis
 
 // gather puts the corners of all units in order: nominal, the operating corners with nominal parts, everything else, each
-// assignment once. The last unit is nominal; the others begin with their operating corner.
+// assignment once. The first units are the operating corners, which begin with nominal parts; the one after them is nominal.
 func (r *Result) gather(p *plan, found [][]Corner) {
 	total := 0
 	for _, list := range found {
@@ -20,35 +20,16 @@ func (r *Result) gather(p *plan, found [][]Corner) {
 		r.Corners = append(r.Corners, *c)
 		return true
 	}
-	last := len(found) - 1
-	add(&found[last][0])
-	for _, list := range found[:last] {
+	points := len(p.points)
+	add(&found[points][0])
+	for _, list := range found[:points] {
 		if add(&list[0]) {
 			r.Operating++
 		}
 	}
-	for _, list := range found[:last] {
-		for i := range list {
-			add(&list[i])
-		}
-	}
-}
-
-// append adds corners whose assignment is new.
-func (r *Result) append(p *plan, found [][]Corner) {
-	known := make(map[string]bool, len(r.Corners))
-	var key []byte
-	x := make([]float64, len(p.nominal))
-	for i := range r.Corners {
-		known[string(appendKey(key[:0], valuesOf(&r.Corners[i], x)))] = true
-	}
 	for _, list := range found {
 		for i := range list {
-			key = appendKey(key[:0], valuesOf(&list[i], x))
-			if !known[string(key)] {
-				known[string(key)] = true
-				r.Corners = append(r.Corners, list[i])
-			}
+			add(&list[i])
 		}
 	}
 }

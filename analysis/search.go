@@ -6,19 +6,21 @@ import (
 	"math"
 )
 
-// search evaluates points for one unit of work and remembers them, so that none is evaluated twice.
+// search evaluates points for one unit of work. Those that it visits it keeps as corners, each once; those that it probes only
+// leave their figures in the tally.
 type search struct {
 	ctx     context.Context
 	plan    *plan
 	worker  *worker
 	seen    map[string]int // assignment → index into corners
 	corners []Corner
+	tally   *tally
 	key     []byte
 	ended   error // ctx ended: values no longer count
 }
 
 func newSearch(ctx context.Context, p *plan, w *worker) *search {
-	return &search{ctx: ctx, plan: p, worker: w, seen: make(map[string]int)}
+	return &search{ctx: ctx, plan: p, worker: w, seen: make(map[string]int), tally: newTally()}
 }
 
 // visit evaluates an assignment unless it is known and gives its index. The error is that of the corner's numbers.
@@ -32,63 +34,79 @@ func (s *search) visit(x []float64) (int, error) {
 	c.At = s.worker.settings()
 	s.seen[string(s.key)] = len(s.corners)
 	s.corners = append(s.corners, c)
+	var r reading
+	for f := range r {
+		r[f] = figure(f).badness(&c)
+	}
+	s.tally.enter(x, &r)
 	return len(s.corners) - 1, err
 }
 
-// value judges an assignment by a figure; a corner that cannot be modelled has no figures.
-func (s *search) value(f figure, x []float64) float64 {
+// probe evaluates an assignment and gives its figures. Once ctx has ended nothing is evaluated and no figure exists.
+func (s *search) probe(x []float64) (r reading) {
+	if s.ended == nil {
+		s.ended = s.ctx.Err()
+	}
 	if s.ended != nil {
-		return nan
+		for f := range r {
+			r[f] = nan
+		}
+		return r
 	}
-	if s.ended = s.ctx.Err(); s.ended != nil {
-		return nan
+	if s.plan.keepAll {
+		at, _ := s.visit(x)
+		for f := range r {
+			r[f] = figure(f).badness(&s.corners[at])
+		}
+		return r
 	}
-	i, _ := s.visit(x)
-	return f.badness(&s.corners[i])
+	s.worker.set(x)
+	s.worker.read(&r)
+	s.tally.enter(x, &r)
+	return r
 }
 
-// operating works through one operating corner: nominal parts, all vertices of what stores energy, then for every figure the
-// other tolerances by the sign of their sensitivity at its worst vertex, and in full depth from there a coordinate search over all
-// extremes.
+// valueOf judges assignments by a figure.
+func (s *search) valueOf(f figure) func(x []float64) float64 {
+	return func(x []float64) float64 {
+		r := s.probe(x)
+		return r[f]
+	}
+}
+
+// keep visits the worst point of every figure in the tally, so that it is among the corners.
+func (s *search) keep() {
+	for f := range figures {
+		if x := s.tally.at[f]; x != nil {
+			_, _ = s.visit(x)
+		}
+	}
+}
+
+// operating works through one operating corner as quick depth does: nominal parts, all vertices of what stores energy, then for
+// every figure the other tolerances by the sign of their sensitivity at its worst vertex.
 func (s *search) operating(o operatingPoint) error {
 	x := s.plan.at(o)
 	if _, err := s.visit(x); err != nil && isNominal(s.plan, x) {
 		return err
 	}
 	s.plan.box.Vertices(x, s.plan.store, func(x []float64) bool {
-		s.value(phaseMargin, x)
+		if s.ended = s.ctx.Err(); s.ended == nil {
+			_, _ = s.visit(x)
+		}
 		return s.ended == nil
 	})
 	for f := range figures {
-		at := s.worst(f)
-		if at < 0 {
+		at := worstOf(f, s.corners)
+		if at < 0 || s.ended != nil {
 			continue
 		}
-		x = s.assignment(at, x)
-		s.guide(f, x, &s.corners[at])
-		s.value(f, x)
-	}
-	if s.plan.full {
-		for f := range figures {
-			s.descend(f, x)
-		}
+		x = valuesOf(&s.corners[at], x)
+		s.guide(f, x, s.corners[at].Loop, s.plan.other)
+		_, _ = s.visit(x)
 	}
 	return s.ended
 }
-
-// descend searches from the worst corner so far.
-func (s *search) descend(f figure, x []float64) {
-	const rounds = 6 // a round that finds nothing ends it; three are typical
-	at := s.worst(f)
-	if at < 0 {
-		return
-	}
-	x = s.assignment(at, x)
-	s.plan.box.Descend(x, f.badness(&s.corners[at]), s.plan.axesOf(f), rounds, func(x []float64) float64 { return s.value(f, x) })
-}
-
-// worst gives the corner with the lowest badness, −1: the figure exists nowhere.
-func (s *search) worst(f figure) int { return worstOf(f, s.corners) }
 
 func worstOf(f figure, corners []Corner) int {
 	at, least := -1, nan
@@ -98,11 +116,6 @@ func worstOf(f figure, corners []Corner) int {
 		}
 	}
 	return at
-}
-
-// assignment writes a corner's values into x.
-func (s *search) assignment(corner int, x []float64) []float64 {
-	return valuesOf(&s.corners[corner], x)
 }
 
 func valuesOf(c *Corner, x []float64) []float64 {

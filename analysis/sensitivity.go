@@ -9,8 +9,8 @@ import (
 	"halfplane/analysis/transfer"
 )
 
-// guide moves every tolerance in x that is not a vertex axis to the extreme that makes the figure worse, to first order, at the
-// corner c whose assignment x is. An axis that changes nothing stays.
+// guide moves the axes in x to the extreme that makes the figure worse, to first order, at x, whose figures are given. An axis
+// that changes nothing stays.
 //
 // The loop gain changes by δ = ln T(max) − ln T(min) at a fixed frequency when one axis runs from min to max. With l = d ln T/du,
 // u = ln ω (all first order):
@@ -18,26 +18,59 @@ import (
 //	crossover        δu = −Re δ/Re l                 phase margin    δm = Im δ + Im l·δu
 //	phase crossover  δu = −Im δ/Im l                 gain margin     −(Re δ + Re l·δu)
 //	modulus margin   Re((1+T)*·T·δ)/|1+T|
-func (s *search) guide(f figure, x []float64, c *Corner) {
-	w := s.worker
-	if c.Loop == nil {
-		return
+func (s *search) guide(f figure, x []float64, figures *loop.Figures, axes []int) {
+	moved := append([]float64(nil), x...)
+	for i, change := range s.changesAt(f, x, figures, axes) {
+		moved[axes[i]] = worseEnd(s.plan, axes[i], change, x[axes[i]])
 	}
-	omega := 2 * math.Pi * f.frequency(c.Loop)
+	copy(x, moved)
+}
+
+// worseEnd is the end of an axis at which a figure is worse to first order, when it changes by change from the axis's min to its
+// max; the value now where nothing changes.
+func worseEnd(p *plan, axis int, change, now float64) float64 {
+	switch {
+	case change < 0:
+		return p.box.Max[axis]
+	case change > 0:
+		return p.box.Min[axis]
+	}
+	return now
+}
+
+// changes measures the point x and gives the first-order changes of the figure's badness there.
+func (s *search) changes(f figure, x []float64, axes []int) []float64 {
+	w := s.worker
+	w.set(x)
+	if !w.hasLoop() || w.meter.Measure(&w.gain, w.solution.FilterFrequency, &w.figures) != nil {
+		return nil
+	}
+	figures := w.figures
+	return s.changesAt(f, x, &figures, axes)
+}
+
+// changesAt gives for each of the axes the first-order change of the figure's badness at x (radians, nepers; up to a positive
+// factor for the others) when the axis runs from its min to its max; figures are those of x. nil where there is no loop.
+func (s *search) changesAt(f figure, x []float64, figures *loop.Figures, axes []int) []float64 {
+	w := s.worker
+	if figures == nil {
+		return nil
+	}
+	omega := 2 * math.Pi * f.frequency(figures)
 	if !(omega > 0) {
-		return
+		return nil
 	}
 	w.set(x)
 	if !w.hasLoop() {
-		return
+		return nil
 	}
 	t := w.gain.At(omega)
 	l, err := w.meter.LogSlope(&w.gain, omega)
 	if err != nil {
-		return
+		return nil
 	}
-	moved := append([]float64(nil), x...)
-	for _, axis := range s.plan.other {
+	list := make([]float64, len(axes))
+	for i, axis := range axes {
 		var delta complex128
 		var zero float64 // change of ln of the right half-plane zero
 		if w.circuit[axis] {
@@ -45,14 +78,9 @@ func (s *search) guide(f figure, x []float64, c *Corner) {
 		} else {
 			delta = w.networkChange(s.plan, axis, omega)
 		}
-		switch change := f.change(c.Loop, t, l, delta, zero); {
-		case change < 0:
-			moved[axis] = s.plan.box.Max[axis]
-		case change > 0:
-			moved[axis] = s.plan.box.Min[axis]
-		}
+		list[i] = f.change(figures, t, l, delta, zero)
 	}
-	copy(x, moved)
+	return list
 }
 
 // frequency is where the figure is decided, Hz; NaN: nowhere.
@@ -64,10 +92,10 @@ func (f figure) frequency(l *loop.Figures) float64 {
 		return l.GainMarginFrequency
 	case modulusMargin:
 		return l.ModulusFrequency
-	case rhpZero:
-		return nan // no frequency of the loop; its vertices are all visited
-	default:
+	case crossoverOverZero, highCrossover, lowCrossover:
 		return l.Crossover
+	default:
+		return nan // no frequency of the loop decides it
 	}
 }
 
@@ -112,7 +140,7 @@ func (w *worker) networkChange(p *plan, axis int, omega float64) complex128 {
 func (w *worker) buildExtremes(p *plan) {
 	w.extremes = make([][2]transfer.Product, len(p.nominal))
 	point := w.design.Nominal.clone()
-	for _, axis := range p.other {
+	for _, axis := range p.tolerant {
 		if w.circuit[axis] {
 			continue
 		}

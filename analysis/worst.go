@@ -1,5 +1,7 @@
 package analysis
 
+import "halfplane/analysis/loop"
+
 // figure is one of the tracked figures. Each has a badness: the lower, the worse.
 type figure int
 
@@ -11,6 +13,9 @@ const (
 	highCrossover
 	lowCrossover
 	rhpZero
+	gainReduction // of a conditionally stable loop
+	manyCrossovers
+	lowGain // at zero frequency
 	figures // how many
 )
 
@@ -22,19 +27,30 @@ func (f figure) badness(c *Corner) float64 {
 	if c.Loop == nil {
 		return nan
 	}
+	return f.ofLoop(c.Loop, c.Plant.RHPZero)
+}
+
+// ofLoop is badness for the figures of a loop; zero is the plant's right half-plane zero, Hz.
+func (f figure) ofLoop(l *loop.Figures, zero float64) float64 {
 	switch f {
 	case phaseMargin:
-		return c.Loop.PhaseMargin
+		return l.PhaseMargin
 	case gainMargin:
-		return c.Loop.GainMargin
+		return l.GainMargin
 	case modulusMargin:
-		return c.Loop.ModulusMargin
+		return l.ModulusMargin
 	case crossoverOverZero:
-		return -c.Loop.Crossover / c.Plant.RHPZero
+		return -l.Crossover / zero
 	case highCrossover:
-		return -c.Loop.Crossover
+		return -l.Crossover
+	case lowCrossover:
+		return l.Crossover
+	case gainReduction:
+		return l.GainReductionMargin
+	case manyCrossovers:
+		return -float64(len(l.Crossovers))
 	default:
-		return c.Loop.Crossover
+		return l.DCGain
 	}
 }
 

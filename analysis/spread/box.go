@@ -57,8 +57,8 @@ func (b Box) Descend(x []float64, worst float64, axes []int, rounds int, value V
 	return worst
 }
 
-// Inside makes x worse by searching every axis over its whole width, one after the other: `points` evenly spaced values, then a
-// golden section around the worst of them when it is not at an end (J. Kiefer, "Sequential minimax search for a maximum",
+// Inside makes x worse by searching every axis over its whole width, one after the other: `points` evenly spaced values and
+// one close to the end where it stands, then a golden section around the worst of them when it is not at an end (J. Kiefer, "Sequential minimax search for a maximum",
 // Proc. American Mathematical Society 4 (1953), from memory). It returns the value at x, which it changes.
 func (b Box) Inside(x []float64, worst float64, axes []int, points int, value Value) float64 {
 	for _, axis := range axes {
@@ -78,6 +78,13 @@ func (b Box) Inside(x []float64, worst float64, axes []int, points int, value Va
 		for i := 1; i+1 < points; i++ {
 			try(low + (high-low)*float64(i)/float64(points-1))
 		}
+		if b.atEnd(axis, best) { // the worst may lie close to the end
+			if near := low + 0.03*(high-low); best == low {
+				try(near)
+			} else {
+				try(low + high - near)
+			}
+		}
 		if step := (high - low) / float64(points-1); best > low && best < high {
 			golden(math.Max(low, best-step), math.Min(high, best+step), try)
 		}
@@ -85,6 +92,8 @@ func (b Box) Inside(x []float64, worst float64, axes []int, points int, value Va
 	}
 	return worst
 }
+
+func (b Box) atEnd(axis int, v float64) bool { return v == b.Min[axis] || v == b.Max[axis] }
 
 // Scatter makes x worse by moving about half of the axes at a time by random steps, from half of an axis's width down to a
 // two-hundredth, always from the worst point so far; steps beyond an extreme end there. It finds what single moves miss: a
