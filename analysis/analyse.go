@@ -70,9 +70,12 @@ func (h *hunt) follow(r *Result) error {
 	}
 	r.Complete = len(h.plan.other) == 0
 	if h.plan.full {
-		if r.Complete, err = h.deepen(quick); err != nil {
-			return err
-		}
+		r.Complete, err = h.deepen(quick)
+	} else {
+		err = h.comparator(quick, h.plan.tolerant)
+	}
+	if err != nil {
+		return err
 	}
 	r.gather(h.plan, h.kept)
 	r.Analysed = h.all.points
@@ -100,6 +103,9 @@ func (h *hunt) deepen(quick []*tally) (complete bool, err error) {
 		starts = append(starts, found...)
 	}
 	if err := h.settle(starts, moving); err != nil {
+		return false, err
+	}
+	if err := h.comparator(corners, moving); err != nil {
 		return false, err
 	}
 	return complete, h.edges()

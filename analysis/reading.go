@@ -1,6 +1,11 @@
 package analysis
 
-import "math"
+import (
+	"errors"
+	"math"
+
+	"halfplane/analysis/plant"
+)
 
 // reading holds every tracked figure of one point as its badness: the lower, the worse; NaN: the figure does not exist there.
 type reading [figures]float64
@@ -10,20 +15,20 @@ func (w *worker) read(r *reading) {
 	for f := range r {
 		r[f] = nan
 	}
-	if w.solveErr != nil {
-		return
-	}
-	if w.solution.HasModel {
-		r[rhpZero] = w.solution.RHPZero
+	if reached := !errors.Is(w.solveErr, plant.ErrUnreachable); w.solveErr == nil || !reached {
+		for f := range figures {
+			if f.ofStage() {
+				r[f] = f.ofPlant(&w.solution, reached)
+			}
+		}
 	}
 	if !w.hasLoop() || w.meter.Measure(&w.gain, w.solution.FilterFrequency, &w.figures) != nil {
 		return
 	}
-	for f := range rhpZero {
-		r[f] = f.ofLoop(&w.figures, w.solution.RHPZero)
-	}
-	for f := rhpZero + 1; f < figures; f++ {
-		r[f] = f.ofLoop(&w.figures, nan)
+	for f := range figures {
+		if !f.ofStage() {
+			r[f] = f.ofLoop(&w.figures, w.solution.RHPZero)
+		}
 	}
 }
 
@@ -51,7 +56,7 @@ func (t *tally) enter(x []float64, r *reading) {
 }
 
 func (t *tally) offer(f figure, x []float64, v float64) {
-	if math.IsNaN(v) || t.at[f] != nil && !(v < t.worst[f]-1e-12*math.Abs(t.worst[f])) {
+	if math.IsNaN(v) || t.at[f] != nil && !(v < t.worst[f]-1e-10*math.Abs(t.worst[f])) {
 		return
 	}
 	t.worst[f] = v

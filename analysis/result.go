@@ -8,15 +8,18 @@ func (r *Result) gather(p *plan, found [][]Corner) {
 		total += len(list)
 	}
 	r.Corners = make([]Corner, 0, total)
-	known := make(map[string]bool, total)
+	known := make(map[string]int, total)
 	var key []byte
 	x := make([]float64, len(p.nominal))
 	add := func(c *Corner) bool {
 		key = appendKey(key[:0], valuesOf(c, x))
-		if known[string(key)] {
+		if i, have := known[string(key)]; have {
+			if r.Corners[i].Ripple == nil {
+				r.Corners[i].Ripple = c.Ripple
+			}
 			return false
 		}
-		known[string(key)] = true
+		known[string(key)] = len(r.Corners)
 		r.Corners = append(r.Corners, *c)
 		return true
 	}

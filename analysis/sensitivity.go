@@ -1,11 +1,13 @@
 package analysis
 
 import (
+	"errors"
 	"math"
 	"math/cmplx"
 
 	"halfplane/analysis/loop"
 	"halfplane/analysis/network"
+	"halfplane/analysis/plant"
 	"halfplane/analysis/transfer"
 )
 
@@ -41,6 +43,9 @@ func worseEnd(p *plan, axis int, change, now float64) float64 {
 // changes measures the point x and gives the first-order changes of the figure's badness there.
 func (s *search) changes(f figure, x []float64, axes []int) []float64 {
 	w := s.worker
+	if f.ofStage() {
+		return s.stageChanges(f, x, axes)
+	}
 	w.set(x)
 	if !w.hasLoop() || w.meter.Measure(&w.gain, w.solution.FilterFrequency, &w.figures) != nil {
 		return nil
@@ -53,6 +58,9 @@ func (s *search) changes(f figure, x []float64, axes []int) []float64 {
 // factor for the others) when the axis runs from its min to its max; figures are those of x. nil where there is no loop.
 func (s *search) changesAt(f figure, x []float64, figures *loop.Figures, axes []int) []float64 {
 	w := s.worker
+	if f.ofStage() {
+		return s.stageChanges(f, x, axes)
+	}
 	if figures == nil {
 		return nil
 	}
@@ -154,6 +162,30 @@ func (w *worker) buildExtremes(p *plan) {
 		}
 		*field = before
 	}
+}
+
+// stageChanges gives the changes of a figure that the compensator has no part in, by looking at both ends of each axis.
+func (s *search) stageChanges(f figure, x []float64, axes []int) []float64 {
+	p, w := s.plan, s.worker
+	list := make([]float64, len(axes))
+	for i, axis := range axes {
+		if !w.circuit[axis] {
+			continue
+		}
+		before := x[axis]
+		var ends [2]float64
+		for side, v := range [2]float64{p.box.Min[axis], p.box.Max[axis]} {
+			x[axis] = v
+			w.set(x)
+			ends[side] = nan
+			if reached := !errors.Is(w.solveErr, plant.ErrUnreachable); w.solveErr == nil || !reached {
+				ends[side] = f.ofPlant(&w.solution, reached)
+			}
+		}
+		x[axis] = before
+		list[i] = ends[1] - ends[0]
+	}
+	return list
 }
 
 // stageChange is the same for an axis of the power stage or the modulator, around x; also the change of ln of the right

@@ -128,7 +128,7 @@ func (w *worker) settings() []Setting {
 func (w *worker) explain(c *Corner, ripple bool) {
 	c.Ideal = plant.IdealOf(&w.point.Circuit)
 	c.DutyPeak = plant.DutyPeak(&w.point.Circuit)
-	if ripple && c.Loop != nil {
+	if ripple && c.Loop != nil && c.Ripple == nil {
 		c.Ripple = w.ripple()
 	}
 }

@@ -1,6 +1,11 @@
 package analysis
 
-import "halfplane/analysis/loop"
+import (
+	"math"
+
+	"halfplane/analysis/loop"
+	"halfplane/analysis/plant"
+)
 
 // figure is one of the tracked figures. Each has a badness: the lower, the worse.
 type figure int
@@ -16,18 +21,55 @@ const (
 	gainReduction // of a conditionally stable loop
 	manyCrossovers
 	lowGain // at zero frequency
-	figures // how many
+
+	// figures of the operating point alone
+	highDuty // a point that no duty reaches is the worst
+	lowDuty
+	peakCurrent // of the inductor
+	wideRipple  // of the inductor
+	offDuty     // mc·D′ of peak current mode
+	figures     // how many
 )
+
+// ofStage says whether the compensator has no part in a figure.
+func (f figure) ofStage() bool { return f == rhpZero || f >= highDuty }
 
 // badness judges a corner by the figure, NaN: it does not exist there.
 func (f figure) badness(c *Corner) float64 {
-	if f == rhpZero {
-		return c.Plant.RHPZero
-	}
-	if c.Loop == nil {
+	switch {
+	case f.ofStage():
+		return f.ofPlant(&c.Plant, c.Reached)
+	case c.Loop == nil:
 		return nan
 	}
 	return f.ofLoop(c.Loop, c.Plant.RHPZero)
+}
+
+// ofPlant is badness for the figures that the compensator has no part in.
+func (f figure) ofPlant(p *plant.Solution, reached bool) float64 {
+	if !reached {
+		if f == highDuty {
+			return -2
+		}
+		return nan
+	}
+	switch f {
+	case rhpZero:
+		return p.RHPZero
+	case highDuty:
+		return -p.Duty
+	case lowDuty:
+		return p.Duty
+	case peakCurrent:
+		return -p.InductorPeak
+	case wideRipple:
+		return -p.InductorRipple
+	default:
+		if p.Current == nil {
+			return nan
+		}
+		return p.Current.OffDutyProduct
+	}
 }
 
 // ofLoop is badness for the figures of a loop; zero is the plant's right half-plane zero, Hz.
@@ -54,7 +96,7 @@ func (f figure) ofLoop(l *loop.Figures, zero float64) float64 {
 	}
 }
 
-// worsts finds the worst values of all corners; the first of equals counts.
+// worsts finds the worst values of all corners; the first of those that are equal but for rounding counts.
 func worsts(corners []Corner) Worsts {
 	w := Worsts{
 		PhaseMargin: nowhere, GainMargin: nowhere, GainReductionMargin: nowhere, ModulusMargin: nowhere, RHPZero: nowhere,
@@ -83,13 +125,13 @@ func worsts(corners []Corner) Worsts {
 var nowhere = Worst{Value: nan, Corner: -1}
 
 func (w *Worst) least(corner int, value float64) {
-	if value < w.Value || w.Corner < 0 && value == value { // NaN differs from itself
+	if value < w.Value-1e-10*math.Abs(w.Value) || w.Corner < 0 && value == value { // NaN differs from itself
 		*w = Worst{value, corner}
 	}
 }
 
 func (w *Worst) greatest(corner int, value float64) {
-	if value > w.Value || w.Corner < 0 && value == value {
+	if value > w.Value+1e-10*math.Abs(w.Value) || w.Corner < 0 && value == value {
 		*w = Worst{value, corner}
 	}
 }

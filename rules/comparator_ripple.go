@@ -3,7 +3,6 @@ package rules
 import (
 	"fmt"
 	"math"
-	"slices"
 
 	"halfplane/analysis"
 	"halfplane/analysis/network"
@@ -31,12 +30,9 @@ var comparatorRipple = Rule{
 	Decide: func(c *Case) []Finding {
 		limit := c.threshold(comparatorRippleDeg)
 		target := c.atLeast(phaseMarginLimit, "/targets/phase-margin")
-		corner, score := c.worst(rippleScore)
+		corner, _ := c.worst(rippleScore)
 		if corner == nil {
 			return nil
-		}
-		if k := corner; k.Ripple.PhaseMargin < target+limit && k.Ripple.PhaseMargin < k.Loop.PhaseMargin-limit/4 {
-			corner = rippleDescent(c, corner, score)
 		}
 		breaks := func(k *analysis.Corner) bool {
 			return !k.Ripple.Stable || k.Ripple.PhaseMargin < k.Loop.PhaseMargin-limit && k.Ripple.PhaseMargin < target-limit
@@ -85,27 +81,6 @@ func rippleScore(k *analysis.Corner) float64 {
 		return 1000 + unstableScore(k.Ripple.PhaseMargin)
 	}
 	return -k.Ripple.PhaseMargin
-}
-
-// rippleDescent looks for a worse corner than the worst of those whose figures with ripple were computed: the analysis looks
-// for the corners that are worst for the averaged loop, and the highest ESR, worst for the ripple, need not be one of them.
-// One axis after the other goes to its extremes and stays where the margin with ripple is lower; two rounds.
-func rippleDescent(c *Case, corner *analysis.Corner, score float64) *analysis.Corner {
-	for range 2 {
-		for i, axis := range c.Design.Axes {
-			for _, value := range []float64{axis.Min, axis.Max} {
-				if value == corner.At[i].Value {
-					continue
-				}
-				settings := slices.Clone(corner.At)
-				settings[i].Value = value
-				if k, err := analysis.At(c.Design, settings); err == nil && rippleScore(&k) > score {
-					corner, score = &k, rippleScore(&k)
-				}
-			}
-		}
-	}
-	return corner
 }
 
 func hasRipple(k *analysis.Corner) bool { return continuous(k) && k.Loop != nil && k.Ripple != nil }

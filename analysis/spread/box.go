@@ -153,7 +153,7 @@ func Boundary(low, high float64, rounds int, is func(v float64) bool) (inside, o
 	return low, high
 }
 
-// worse says whether a is a worse value than b; a value that does not exist never is, and anything is worse than one.
+// worse says whether a is a worse value than b, beyond rounding; a value that does not exist never is, and anything is worse than one.
 func worse(a, b float64) bool {
-	return a < b || math.IsNaN(b) && !math.IsNaN(a)
+	return a < b-1e-10*math.Abs(b) || math.IsNaN(b) && !math.IsNaN(a)
 }
