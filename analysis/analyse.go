@@ -79,6 +79,9 @@ func (h *hunt) follow(r *Result) error {
 	}
 	r.gather(h.plan, h.kept)
 	r.Analysed = h.all.points
+	if h.plan.keepAll {
+		r.Analysed = len(r.Corners)
+	}
 	r.Worst = worsts(r.Corners)
 	r.Method = h.plan.method(r)
 	return r.explain(h.plan, h.team)

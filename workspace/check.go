@@ -16,7 +16,8 @@ type Options struct {
 	Rules    rules.RunOptions
 	Settings rules.Settings
 	Depth    analysis.Depth
-	Jobs     int // at once, over files and corners together; 0: as many as the machine runs
+	Jobs     int  // at once, over files and corners together; 0: as many as the machine runs
+	KeepAll  bool // every point analysed is in the result, not only those that show or decide something
 }
 
 // CheckFile reads, validates, analyses and judges one file. A file that cannot be read has a finding that says so.
@@ -51,7 +52,7 @@ func unreadable(path string, err error) File {
 func (w *Workspace) CheckDocument(ctx context.Context, doc *schema.Document, o Options) (f File) {
 	f = File{Path: filepath.ToSlash(doc.Name), Document: doc, Status: Checked}
 	defer isolate(&f, f.Path, doc)
-	c, problems, err := w.prepare(ctx, doc, w, o.Settings, analysis.Options{Depth: o.Depth, Jobs: o.Jobs})
+	c, problems, err := w.prepare(ctx, doc, w, o.Settings, analysis.Options{Depth: o.Depth, Jobs: o.Jobs, KeepAll: o.KeepAll})
 	switch {
 	case len(problems) > 0:
 		f.Status = Unreadable
