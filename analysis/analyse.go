@@ -2,6 +2,7 @@ package analysis
 
 import (
 	"context"
+	"errors"
 	"fmt"
 )
 
@@ -72,7 +73,7 @@ func (h *hunt) follow(r *Result) error {
 	if h.plan.full {
 		r.Complete, err = h.deepen(quick)
 	} else {
-		err = h.comparator(quick, h.plan.tolerant)
+		err = errors.Join(h.quickKinks(quick), h.comparator(quick, h.plan.store))
 	}
 	if err != nil {
 		return err

@@ -39,6 +39,25 @@ func (h *hunt) kinks(corners []*tally, moving []int) ([]*tally, error) {
 	})
 }
 
+// quickKinks is what quick depth sees of it: the boundary over load and over input voltage through the corners with the lowest margins.
+func (h *hunt) quickKinks(corners []*tally) error {
+	p := h.plan
+	if p.design.Nominal.Circuit.Synchronous {
+		return nil
+	}
+	_, err := h.run(len(corners), func(s *search, unit int) error {
+		for _, f := range [...]figure{phaseMargin, gainMargin} {
+			if x := corners[unit].at[f]; x != nil {
+				s.kink(x, p.load)
+				s.kink(x, p.input)
+			}
+		}
+		s.keep()
+		return nil
+	})
+	return err
+}
+
 // inputs lists the input voltages of the operating corners, each once.
 func (p *plan) inputs() []float64 {
 	var list []float64
@@ -133,7 +152,11 @@ func (s *search) sides(x []float64, axis int) []float64 {
 			return []float64{below, above}
 		}
 	}
-	inside, outside := spread.Boundary(low, high, 26, func(v float64) bool { return mode(v) == at })
+	rounds := 26
+	if !s.plan.full {
+		rounds = 10
+	}
+	inside, outside := spread.Boundary(low, high, rounds, func(v float64) bool { return mode(v) == at })
 	return []float64{inside, outside}
 }
 
