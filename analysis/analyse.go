@@ -69,9 +69,9 @@ func (h *hunt) follow(r *Result) error {
 	if err != nil {
 		return err
 	}
-	r.Complete = len(h.plan.other) == 0
+	left := leftOut{axes: len(h.plan.other)}
 	if h.plan.full {
-		r.Complete, err = h.deepen(quick)
+		left, err = h.deepen(quick)
 	} else {
 		err = errors.Join(h.quickKinks(quick), h.comparator(quick, h.plan.store))
 	}
@@ -84,35 +84,36 @@ func (h *hunt) follow(r *Result) error {
 		r.Analysed = len(r.Corners)
 	}
 	r.Worst = worsts(r.Corners)
-	r.Method = h.plan.method(r)
+	r.Complete = left.axes == 0
+	r.Method = h.plan.method(r.Analysed, left)
 	return r.explain(h.plan, h.team)
 }
 
-// deepen is what full depth adds to the operating corners. complete: every extreme of every tolerance that matters was visited.
-func (h *hunt) deepen(quick []*tally) (complete bool, err error) {
+// deepen is what full depth adds to the operating corners.
+func (h *hunt) deepen(quick []*tally) (left leftOut, err error) {
 	moving, err := h.moving()
 	if err != nil {
-		return false, err
+		return left, err
 	}
-	corners, complete, err := h.extremes(quick, moving)
+	corners, left, err := h.extremes(quick, moving)
 	if err != nil {
-		return false, err
+		return left, err
 	}
 	starts := append([]*tally{}, corners...)
 	for _, stage := range []func([]*tally, []int) ([]*tally, error){h.kinks, h.insides} {
 		found, err := stage(corners, moving)
 		if err != nil {
-			return false, err
+			return left, err
 		}
 		starts = append(starts, found...)
 	}
 	if err := h.settle(starts, moving); err != nil {
-		return false, err
+		return left, err
 	}
 	if err := h.comparator(corners, moving); err != nil {
-		return false, err
+		return left, err
 	}
-	return complete, h.edges()
+	return left, h.edges()
 }
 
 // run does units of work in parallel, each with a search of its own, and takes in what they found in the order of the units.
@@ -154,15 +155,16 @@ func (h *hunt) operating() ([]*tally, error) {
 	return found[:len(p.points)], nil
 }
 
-// method says in words how the worst corners were found.
-func (p *plan) method(r *Result) string {
+// method says in words how the worst corners were found, and what was left out.
+func (p *plan) method(analysed int, left leftOut) string {
 	switch {
-	case !p.full && r.Complete:
-		return fmt.Sprintf("extreme-value, %d corners", r.Analysed)
-	case !p.full:
-		return fmt.Sprintf("extreme-value, %d corners, by sensitivity", r.Analysed)
-	case !r.Complete:
-		return fmt.Sprintf("extreme-value, %d corners, refined, %d extremes at most at each operating corner", r.Analysed, mostVertices)
+	case p.full && left.axes > 0:
+		return fmt.Sprintf("extreme-value, %d corners, refined; %d extremes at each operating corner, %d more tolerances by sensitivity (together %.2g° of phase margin)",
+			analysed, mostVertices, left.axes, left.degree)
+	case p.full:
+		return fmt.Sprintf("extreme-value, %d corners, refined", analysed)
+	case left.axes > 0:
+		return fmt.Sprintf("extreme-value, %d corners, %d tolerances by sensitivity", analysed, left.axes)
 	}
-	return fmt.Sprintf("extreme-value, %d corners, refined", r.Analysed)
+	return fmt.Sprintf("extreme-value, %d corners", analysed)
 }

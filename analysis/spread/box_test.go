@@ -68,3 +68,29 @@ func TestScatterFollowsACurvedBorder(t *testing.T) {
 	b.Scatter(y, f(y), []int{0, 1}, 300, 1, f)
 	assert.Equal(t, x, y)
 }
+
+func TestSimplexFollowsAValleyThatNoSingleAxisFollows(t *testing.T) {
+	b := Box{Min: []float64{-2, -2, 0}, Max: []float64{2, 2, 1}}
+	// H. H. Rosenbrock's valley (Computer Journal 3 (1960), from memory): minimum 0 at (1, 1).
+	valley := func(x []float64) float64 {
+		return 100*(x[1]-x[0]*x[0])*(x[1]-x[0]*x[0]) + (1-x[0])*(1-x[0])
+	}
+	x := []float64{0.5, 0.5, 0.3}
+	worst := b.Simplex(x, valley(x), b.Between(x, []int{0, 1}), 400, valley)
+	assert.InDelta(t, 0, worst, 1e-3)
+	assert.InDelta(t, valley(x), worst, 1e-12)
+	assert.Equal(t, 0.3, x[2])
+}
+
+func TestSimplexStaysInTheBoxAndPassesPanicsOn(t *testing.T) {
+	b := Box{Min: []float64{0, 0}, Max: []float64{1, 1}}
+	x := []float64{0.5, 0.5}
+	worst := b.Simplex(x, 0, []int{0, 1}, 200, func(x []float64) float64 {
+		for _, v := range x {
+			assert.True(t, v >= 0 && v <= 1)
+		}
+		return -x[0] - x[1]
+	})
+	assert.InDelta(t, -2, worst, 1e-6)
+	assert.PanicsWithValue(t, "broken", func() { b.Simplex([]float64{0.5, 0.5}, 0, []int{0, 1}, 50, func([]float64) float64 { panic("broken") }) })
+}
