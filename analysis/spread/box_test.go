@@ -92,5 +92,7 @@ func TestSimplexStaysInTheBoxAndPassesPanicsOn(t *testing.T) {
 		return -x[0] - x[1]
 	})
 	assert.InDelta(t, -2, worst, 1e-6)
-	assert.PanicsWithValue(t, "broken", func() { b.Simplex([]float64{0.5, 0.5}, 0, []int{0, 1}, 50, func([]float64) float64 { panic("broken") }) })
+	assert.PanicsWithValue(t, "broken", func() {
+		b.Simplex([]float64{0.5, 0.5}, 0, []int{0, 1}, 50, func([]float64) float64 { panic("broken") })
+	})
 }
