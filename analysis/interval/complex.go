@@ -1,0 +1,71 @@
+package interval
+
+import "math"
+
+// Complex is a complex value whose parts are forms of the same symbols.
+type Complex struct{ Re, Im Form }
+
+// MulComplex sets d = a·b; d is neither of the two.
+func (s Space) MulComplex(d, a, b *Complex) {
+	var p Form
+	s.Mul(&d.Re, &a.Re, &b.Re)
+	s.Mul(&p, &a.Im, &b.Im)
+	s.Sub(&d.Re, &d.Re, &p)
+	s.Mul(&d.Im, &a.Re, &b.Im)
+	s.Mul(&p, &a.Im, &b.Re)
+	s.Add(&d.Im, &d.Im, &p)
+}
+
+// AddComplex sets d = a + b.
+func (s Space) AddComplex(d, a, b *Complex) {
+	s.Add(&d.Re, &a.Re, &b.Re)
+	s.Add(&d.Im, &a.Im, &b.Im)
+}
+
+// LogPolar adds sign·ln|z| to magnitude and sign·arg z to phase, arg z around the principal value of the centre; false, and nothing is
+// added, where z may be zero or its range is too wide about its centre.
+//
+// With r ≈ 1/centre, z·r = 1 + w, and ln(1+w) = w − w²/2 + …, where what follows is at most |w|³/(3(1−|w|)).
+func (s Space) LogPolar(magnitude, phase *Form, z *Complex, sign float64) bool {
+	x, y := z.Re.Centre, z.Im.Centre
+	size := x*x + y*y
+	if !(size > 0) || math.IsInf(size, 0) {
+		return false
+	}
+	rx, ry := x/size, -y/size
+	var w Complex // z·r − 1
+	var p Form
+	s.Scale(&w.Re, &z.Re, rx)
+	s.Scale(&p, &z.Im, ry)
+	s.Sub(&w.Re, &w.Re, &p)
+	s.Shift(&w.Re, &w.Re, -1)
+	s.Scale(&w.Im, &z.Re, ry)
+	s.Scale(&p, &z.Im, rx)
+	s.Add(&w.Im, &w.Im, &p)
+
+	var linear, squares, sqRe, sqIm float64 // Σ|w[i]|, Σ|w[i]|², Σ w[i]²
+	for i := range s.N {
+		a, b := w.Re.Coef[i], w.Im.Coef[i]
+		m2 := a*a + b*b
+		linear += math.Sqrt(m2)
+		squares += m2
+		sqRe += a*a - b*b
+		sqIm += 2 * a * b
+	}
+	linear *= slack
+	off := math.Abs(w.Re.Centre) + math.Abs(w.Im.Centre)
+	rest := (w.Re.Rest + w.Im.Rest + off) * slack
+	all := linear + rest
+	if !(all < 0.75) {
+		return false
+	}
+	second := (linear*linear-squares/2)/2 + linear*rest + rest*rest/2
+	error := (second+all*all*all/(3*(1-all)))*slack + rest + 64*unit*(1+all)
+	lnr, argr := math.Log(size)/2, math.Atan2(y, x) // −ln|r|, −arg r but for rounding of r, which rest and unit count
+
+	m := Form{Centre: lnr - sqRe/4, Coef: w.Re.Coef, Rest: error + 16*unit*(1+math.Abs(lnr))}
+	a := Form{Centre: argr - sqIm/4, Coef: w.Im.Coef, Rest: error + 16*unit*(1+math.Abs(argr))}
+	s.combine(magnitude, magnitude, &m, sign)
+	s.combine(phase, phase, &a, sign)
+	return true
+}

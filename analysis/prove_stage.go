@@ -1,0 +1,314 @@
+package analysis
+
+import (
+	"halfplane/analysis/interval"
+	"halfplane/analysis/plant"
+)
+
+// stageForms is the control-to-output function of a power stage over a cell, modulator included: numerator/denominator, each a
+// product of polynomials in s.
+type stageForms struct {
+	numerators  []enclosedPolynomial
+	denominator enclosedPolynomial
+	delay       interval.Form
+}
+
+// stageOver forms the power stage over a cell, or says what is not certain there: a duty exists, and conduction is continuous.
+//
+// With Y(s) the admittance of load and capacitors, b̄ the mean of the on and off interval's b, Δ their differences, and i = I/b̄
+// (theory sheet sections 2 and 3, written with the load as one admittance):
+//
+//	re = r̄ + ρ·var b          ρ = 1/(G + Σ 1/rk), what the node's voltage steps by per ampere
+//	F  = Δ(a·m·Vg − b·(V + ρ(b·i − I)) − r·i − c·VF)
+//	vo/d = (Δb·i·(re + s·L) + b̄·F) / ((re + s·L)·Y(s) + b̄²)
+//
+// Both sides are multiplied by Π(1 + s·rk·Ck), so that everything is a polynomial.
+func (e *enclosed) stageOver(c *cell) (out stageForms, why string) {
+	s := e.space
+	op, why := e.operate(c)
+	if why != "" {
+		return out, why
+	}
+	branches := e.branchesOver(c)
+	var t, rho, re, l interval.Form
+	if !e.parallel(branches, &op.conductance, &rho) {
+		return out, notCertain
+	}
+	s.Mul(&re, &rho, &op.varB)
+	s.Add(&re, &re, &op.meanR)
+	inductance := e.value(c, "inductor.inductance")
+	s.Scale(&l, &inductance, e.weights.inductance)
+	series := polynomial(re, l)
+
+	y, product := e.admittance(branches, &op.conductance)
+	out.denominator = series.times(s, &y)
+	var b2 interval.Form
+	s.Sqr(&b2, &op.meanB)
+	loaded := product.scaled(s, &b2)
+	out.denominator = out.denominator.plus(s, &loaded)
+	out.denominator = out.denominator.trimmed()
+
+	// F, with vo of each interval
+	on, off := e.stage.On, e.stage.Off
+	var f interval.Form
+	s.Affine(&f, &op.input, (on.A-off.A)*e.stage.Drive, -(on.B-off.B)*e.stage.Output, 0)
+	var step interval.Form // Σ over intervals of b·(b·i − I)
+	s.Affine(&step, &op.current, on.B*on.B-off.B*off.B, 0, 0)
+	s.Scale(&t, &op.load, on.B-off.B)
+	s.Sub(&step, &step, &t)
+	s.Mul(&step, &step, &rho)
+	s.Sub(&f, &f, &step)
+	s.Sub(&t, &op.onR, &op.offR)
+	s.Mul(&t, &t, &op.current)
+	s.Sub(&f, &f, &t)
+	s.Scale(&t, &op.drop, on.C-off.C)
+	s.Sub(&f, &f, &t)
+	s.Mul(&f, &f, &op.meanB)
+
+	// modulator: control-ratio/ramp, the ramp in proportion to the input with feed-forward
+	gain := e.value(c, "modulator.control-ratio")
+	ramp := e.value(c, "modulator.ramp-amplitude")
+	if e.point.Circuit.Modulator.FeedForward {
+		s.Mul(&ramp, &ramp, &op.input)
+		s.Scale(&ramp, &ramp, 1/e.point.Circuit.Modulator.NominalInput)
+	}
+	if !s.Div(&gain, &gain, &ramp) {
+		return out, notCertain
+	}
+	numerator := polynomial(f)
+	if on.B != off.B {
+		var slope interval.Form
+		s.Scale(&slope, &op.current, on.B-off.B)
+		n := series.scaled(s, &slope)
+		s.Add(&n.c[0], &n.c[0], &f)
+		numerator = n
+	}
+	numerator = numerator.scaled(s, &gain)
+	out.numerators = append(out.numerators, numerator.trimmed())
+	for i := range branches {
+		b := &branches[i]
+		if !isZero(&b.r) {
+			s.Mul(&t, &b.r, &b.c)
+			out.numerators = append(out.numerators, polynomial(interval.Const(1), t))
+		}
+	}
+	out.delay = e.value(c, "modulator.delay")
+	return out, ""
+}
+
+const notCertain = "some figure's range could not be bounded"
+
+// branchForms is one capacitor with its series resistance over a cell.
+type branchForms struct{ c, r interval.Form }
+
+func (e *enclosed) branchesOver(c *cell) []branchForms {
+	list := make([]branchForms, len(e.branches))
+	for i, b := range e.branches {
+		capacitance, esr := e.value(c, b.capacitance), e.value(c, b.esr)
+		e.space.Scale(&list[i].c, &capacitance, b.c)
+		if !isZero(&esr) {
+			e.space.Scale(&list[i].r, &esr, b.r)
+		}
+	}
+	return list
+}
+
+// parallel sets rho = 1/(g + Σ 1/rk), written without dividing by a resistance that may be zero: Πr/(g·Πr + Σ Π of the others).
+func (e *enclosed) parallel(branches []branchForms, g, rho *interval.Form) bool {
+	s := e.space
+	all, sum := interval.Const(1), interval.Const(0)
+	for i := range branches {
+		r := &branches[i].r
+		if isZero(r) {
+			*rho = interval.Form{}
+			return true
+		}
+		// Σ Π of the others: (sum)·r + all
+		s.Mul(&sum, &sum, r)
+		s.Add(&sum, &sum, &all)
+		s.Mul(&all, &all, r)
+	}
+	var den interval.Form
+	s.Mul(&den, g, &all)
+	s.Add(&den, &den, &sum)
+	return s.Div(rho, &all, &den)
+}
+
+// admittance gives Y(s)·Π(1 + s·rk·Ck) and Π(1 + s·rk·Ck).
+func (e *enclosed) admittance(branches []branchForms, g *interval.Form) (y, product enclosedPolynomial) {
+	s := e.space
+	y, product = polynomial(*g), polynomial(interval.Const(1))
+	for i := range branches {
+		b := &branches[i]
+		factor := polynomial(interval.Const(1))
+		if !isZero(&b.r) {
+			var rc interval.Form
+			s.Mul(&rc, &b.r, &b.c)
+			factor = polynomial(interval.Const(1), rc)
+		}
+		charge := polynomial(interval.Const(0), b.c)
+		charge = charge.times(s, &product)
+		y = y.times(s, &factor)
+		y = y.plus(s, &charge)
+		product = product.times(s, &factor)
+	}
+	return y, product
+}
+
+// operatingForms is the operating point over a cell, of the equivalent phase on the output side.
+type operatingForms struct {
+	input, load, drop, conductance interval.Form
+	duty, meanB, varB              interval.Form
+	onR, offR, meanR, current      interval.Form
+}
+
+// operate solves the operating point over a cell: the lowest root of the quadratic p0 + p1·d + p2·d² of package plant (conversion), in the
+// form −2·p0/(p1 + √(p1² − 4·p2·p0)), which is that root whenever p0 < 0 and the denominator is positive. It demands 0 < d < 1 and continuous
+// conduction throughout.
+func (e *enclosed) operate(c *cell) (op operatingForms, why string) {
+	s, w := e.space, &e.weights
+	on, off := e.stage.On, e.stage.Off
+	op.input, op.load, op.drop = e.value(c, "input-voltage"), e.value(c, "load.current"), e.value(c, "rectifier.forward-drop")
+	switch e.point.Circuit.Behaviour {
+	case plant.Resistive:
+		s.Scale(&op.conductance, &op.load, 1/e.stage.Output)
+	case plant.ConstantPower:
+		s.Scale(&op.conductance, &op.load, -1/e.stage.Output)
+	}
+	winding, onR, diode := e.value(c, "inductor.resistance"), e.value(c, "switch.on-resistance"), e.value(c, "rectifier.resistance")
+	e.resistance(&op.onR, &winding, &onR, &diode, w.onWinding, w.onSwitch, w.onDiode)
+	e.resistance(&op.offR, &winding, &onR, &diode, w.offWinding, w.offSwitch, w.offDiode)
+
+	// static ρ: the capacitors alone
+	var rho interval.Form
+	none := interval.Const(0)
+	if !e.parallel(e.branchesOver(c), &none, &rho) {
+		return op, notCertain
+	}
+	// Three coefficients each: of 1, d and d².
+	var volts, loss [3]interval.Form
+	s.Affine(&volts[0], &op.input, off.A*e.stage.Drive, 0, 0)
+	s.Affine(&volts[1], &op.input, (on.A-off.A)*e.stage.Drive, 0, 0)
+	var t interval.Form
+	s.Scale(&t, &op.drop, off.C)
+	s.Sub(&volts[0], &volts[0], &t)
+	s.Scale(&t, &op.drop, on.C-off.C)
+	s.Sub(&volts[1], &volts[1], &t)
+	b0, b1 := off.B, on.B-off.B
+	loss[0] = op.offR
+	s.Sub(&loss[1], &op.onR, &op.offR)
+	// ρ·var b, var b = (Δb)²·(d − d²)
+	s.Scale(&t, &rho, b1*b1)
+	s.Add(&loss[1], &loss[1], &t)
+	s.Sub(&loss[2], &loss[2], &t)
+	// p = b̄·volts − I·loss − V·b̄²
+	var p [3]interval.Form
+	s.Scale(&p[0], &volts[0], b0)
+	s.Scale(&p[1], &volts[1], b0)
+	s.Scale(&t, &volts[0], b1)
+	s.Add(&p[1], &p[1], &t)
+	s.Scale(&p[2], &volts[1], b1)
+	bb := [3]float64{b0 * b0, 2 * b0 * b1, b1 * b1}
+	for k := range p {
+		if !isZero(&loss[k]) {
+			s.Mul(&t, &loss[k], &op.load)
+			s.Sub(&p[k], &p[k], &t)
+		}
+		if bb[k] != 0 {
+			s.Shift(&p[k], &p[k], -bb[k]*e.stage.Output)
+		}
+	}
+	if why := e.duty(&p, &op.duty); why != "" {
+		return op, why
+	}
+	s.Affine(&op.meanB, &op.duty, b1, b0, 0)
+	var d2 interval.Form
+	s.Sqr(&d2, &op.duty)
+	s.Sub(&op.varB, &op.duty, &d2)
+	s.Scale(&op.varB, &op.varB, b1*b1)
+	s.Sub(&t, &op.onR, &op.offR)
+	s.Mul(&t, &t, &op.duty)
+	s.Add(&op.meanR, &op.offR, &t)
+	if b1 == 0 {
+		s.Scale(&op.current, &op.load, 1/b0)
+	} else if !s.Div(&op.current, &op.load, &op.meanB) {
+		return op, notCertain
+	}
+	if !e.point.Circuit.Synchronous {
+		return op, e.continuous(c, &op, &rho)
+	}
+	return op, ""
+}
+
+func (e *enclosed) resistance(d, winding, onR, diode *interval.Form, a, b, c float64) {
+	s := e.space
+	var t interval.Form
+	s.Scale(d, winding, a)
+	s.Scale(&t, onR, b)
+	s.Add(d, d, &t)
+	s.Scale(&t, diode, c)
+	s.Add(d, d, &t)
+}
+
+// duty is the lowest root of the quadratic in (0, 1).
+func (e *enclosed) duty(p *[3]interval.Form, d *interval.Form) string {
+	const unreached = "a duty that gives the output voltage is not certain"
+	s := e.space
+	if _, high := s.Bounds(&p[0]); !(high < 0) {
+		return unreached
+	}
+	var root, t interval.Form
+	if isZero(&p[2]) {
+		root = p[1] // the quadratic is a line: −p0/p1
+		s.Scale(&root, &root, 2)
+	} else {
+		s.Sqr(&root, &p[1])
+		s.Mul(&t, &p[2], &p[0])
+		s.Scale(&t, &t, 4)
+		s.Sub(&root, &root, &t)
+		if !s.Sqrt(&root, &root) {
+			return unreached
+		}
+		s.Add(&root, &root, &p[1])
+	}
+	if low, _ := s.Bounds(&root); !(low > 0) {
+		return unreached
+	}
+	s.Scale(&t, &p[0], -2)
+	if !s.Div(d, &t, &root) {
+		return unreached
+	}
+	if low, high := s.Bounds(d); !(low > 0 && high < 1) {
+		return unreached
+	}
+	return ""
+}
+
+// continuous demands that the inductor's mean current exceeds half its ripple: i > slope·d·T/2.
+func (e *enclosed) continuous(c *cell, op *operatingForms, rho *interval.Form) string {
+	s, on := e.space, e.stage.On
+	var volts, t interval.Form
+	s.Affine(&volts, &op.input, on.A*e.stage.Drive, -on.B*e.stage.Output, 0)
+	s.Affine(&t, &op.current, on.B*on.B, 0, 0)
+	var load interval.Form
+	s.Scale(&load, &op.load, on.B)
+	s.Sub(&t, &t, &load)
+	s.Mul(&t, &t, rho)
+	s.Sub(&volts, &volts, &t)
+	s.Mul(&t, &op.onR, &op.current)
+	s.Sub(&volts, &volts, &t)
+	s.Scale(&t, &op.drop, on.C)
+	s.Sub(&volts, &volts, &t)
+	s.Mul(&volts, &volts, &op.duty)
+	s.Scale(&volts, &volts, e.stage.Period/2)
+	inductance := e.value(c, "inductor.inductance")
+	s.Scale(&inductance, &inductance, e.weights.inductance)
+	s.Mul(&inductance, &inductance, &op.current)
+	s.Sub(&inductance, &inductance, &volts)
+	if low, _ := s.Bounds(&inductance); !(low > 0) {
+		return discontinuousPart
+	}
+	return ""
+}
+
+const discontinuousPart = "continuous conduction is not certain"
