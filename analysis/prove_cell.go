@@ -108,18 +108,21 @@ func (b *boxProof) stretch(l *loopForms, s segment, left []segment, scores, adve
 	if s.part == outRange {
 		set = phaseSet{0}
 	}
-	var g, theta interval.Form
-	known := b.between(l, s.low, s.high, &g, &theta)
-	if known && set.avoids(b.space, &g, &theta) {
-		return left
+	var t gainForms
+	known := b.between(l, s.low, s.high, &t)
+	if known {
+		if set.beyond(b.size(&t)) || t.whole && set.avoids(b.space, &t.g, &t.theta) {
+			return left
+		}
+		known = t.whole
 	}
 	halves := s.high-s.low > 0.1
 	if known {
 		moved := 0.0
 		for i := range b.frequency {
-			moved += math.Abs(g.Coef[i]) + math.Abs(theta.Coef[i])
+			moved += math.Abs(t.g.Coef[i]) + math.Abs(t.theta.Coef[i])
 		}
-		own := math.Abs(g.Coef[b.frequency]) + math.Abs(theta.Coef[b.frequency])
+		own := math.Abs(t.g.Coef[b.frequency]) + math.Abs(t.theta.Coef[b.frequency])
 		halves = s.high-s.low > narrow && own > moved/2
 	}
 	if halves {
@@ -128,9 +131,9 @@ func (b *boxProof) stretch(l *loopForms, s segment, left []segment, scores, adve
 		return b.stretch(l, segment{s.part, middle, s.high}, left, scores, adverse, looked)
 	}
 	if known {
-		worse := set.worsens(b.space, &g, &theta, b.frequency)
+		worse := set.worsens(b.space, &t.g, &t.theta, b.frequency)
 		for i := range b.frequency {
-			spread := math.Abs(g.Coef[i]) + math.Abs(theta.Coef[i])
+			spread := math.Abs(t.g.Coef[i]) + math.Abs(t.theta.Coef[i])
 			scores[i] += math.Abs(worse[i]) + spread*spread/2
 			adverse[i] += worse[i]
 		}

@@ -11,7 +11,13 @@ import (
 type networkForms struct {
 	numerators, denominators []enclosedPolynomial
 	integrators              int
+	amplifier                *amplifierForms
 }
+
+// amplifierForms splits the denominator of a network around a finite amplifier, D + M, into the ideal network's D = s·Df·Dy and what the
+// amplifier adds, M = Na·(D + Nf·Ny + Nf·Dy/RL): where M is small beside D, ln(D + M) = ln Df + ln Dy + ln s + ln(1 + M/D) keeps the
+// dependence on the parts better than the expanded sum does.
+type amplifierForms struct{ df, dy, added enclosedPolynomial }
 
 // networkOver forms the compensator over a cell (theory sheet section 7; the closed forms of package network); false where a part that
 // divides may be zero.
@@ -106,6 +112,7 @@ func (e *enclosed) networkOver(c *cell) (out networkForms, ok bool) {
 			na = polynomial(a0, slope)
 		}
 		noise = noise.times(s, &na)
+		out.amplifier = &amplifierForms{df, dy, noise}
 		out.denominators = append(out.denominators, forward.plus(s, &noise))
 	default:
 		out.denominators = append(out.denominators, df, dy)

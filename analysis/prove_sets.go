@@ -11,6 +11,8 @@ import (
 type forbidden interface {
 	// avoids is true when no value that the forms enclose is in the set.
 	avoids(s interval.Space, g, theta *interval.Form) bool
+	// beyond is true when no value with ln|T| between low and high is in the set.
+	beyond(low, high float64) bool
 	// worsens gives the direction in which each symbol brings the loop gain nearer to the set; frequency is the symbol of u, which is
 	// eliminated.
 	worsens(s interval.Space, g, theta *interval.Form, frequency int) [interval.Symbols]float64
@@ -27,17 +29,17 @@ type discSet struct{ radius float64 }
 
 const wholeTurn = 2 * math.Pi
 
+func (p phaseSet) beyond(low, high float64) bool { return low > 0 || high < 0 }
+func (p gainSet) beyond(low, high float64) bool  { return low > 0 || high < -p.depth }
+func (p discSet) beyond(low, high float64) bool {
+	return math.Expm1(low) > p.radius*(1+1e-12) || -math.Expm1(high) > p.radius*(1+1e-12)
+}
+
 func (p phaseSet) avoids(s interval.Space, g, theta *interval.Form) bool {
-	if low, high := s.Bounds(g); low > 0 || high < 0 {
-		return true
-	}
 	return eachTurn(s, theta, p.angle, func(t *interval.Form) bool { return offSegment(s, g, t, -p.angle, p.angle) })
 }
 
 func (p gainSet) avoids(s interval.Space, g, theta *interval.Form) bool {
-	if low, high := s.Bounds(g); low > 0 || high < -p.depth {
-		return true
-	}
 	return eachTurn(s, theta, 0, func(t *interval.Form) bool { return offSegment(s, t, g, -p.depth, 0) })
 }
 
@@ -115,45 +117,52 @@ func eliminate(s interval.Space, a, b *interval.Form, frequency int, sign func(s
 	return d
 }
 
-// avoids: with z = g + jθ about its centre z0, 1 + T = 1 − e^z = (1 − e^z0) − e^z0·(w + …), w = z − z0, the rest at most |w|²·e^|w|/2. A convex
-// set and a disc are apart when a line separates them: tried is the one across the way to the centre, and those along each symbol.
+// avoids: 1 + T = 1 − e^z with z = g + jθ, so z is in the set when z = ln(1 − ζ) with |ζ| below the radius. The function −ln(1 − ζ) maps
+// every disc about 0 in the unit disc onto a convex set (E. Study's theorem on convex functions, 1913, from memory), so again a line
+// separates the values of the forms from it. Tried are the axis of θ, the way to the centre, and the line along each symbol.
 func (p discSet) avoids(s interval.Space, g, theta *interval.Form) bool {
-	low, high := s.Bounds(g)
-	if math.Expm1(low) > p.radius*(1+1e-12) || -math.Expm1(high) > p.radius*(1+1e-12) {
-		return true
-	}
-	across := func(x, y float64) float64 { return math.Sqrt(x*x + y*y) }
-	rho := g.Rest + theta.Rest
-	for i := range s.N {
-		rho += across(g.Coef[i], theta.Coef[i])
-	}
-	rho *= 1 + 1e-13
-	if !(rho < 1) {
+	if !(p.radius < 1) {
 		return false
 	}
-	sin, cos := math.Sincos(theta.Centre)
-	size := math.Exp(g.Centre)
-	ex, ey := size*cos, size*sin
-	cx, cy := 1-ex, -ey
-	rest := size*(g.Rest+theta.Rest+rho*rho*math.Exp(rho)/2) + 1e-13*(1+size)*(1+math.Abs(theta.Centre))
-	apart := func(nx, ny float64) bool { // n is a unit vector
-		far := math.Abs(nx*cx+ny*cy) - rest
-		for i := range s.N {
-			qx, qy := ex*g.Coef[i]-ey*theta.Coef[i], ey*g.Coef[i]+ex*theta.Coef[i]
-			far -= math.Abs(nx*qx + ny*qy)
-		}
-		return far > p.radius*(1+1e-12)
-	}
-	if c := across(cx, cy); c > 0 && apart(cx/c, cy/c) {
-		return true
-	}
-	for i := range s.N {
-		qx, qy := ex*g.Coef[i]-ey*theta.Coef[i], ey*g.Coef[i]+ex*theta.Coef[i]
-		if q := across(qx, qy); q > 0 && apart(-qy/q, qx/q) {
+	return eachTurn(s, theta, math.Asin(p.radius), func(t *interval.Form) bool {
+		if p.apart(s, g, t, 0, 1) || p.apart(s, g, t, g.Centre, t.Centre) {
 			return true
 		}
+		for i := range s.N {
+			if p.apart(s, g, t, -t.Coef[i], g.Coef[i]) {
+				return true
+			}
+		}
+		return false
+	})
+}
+
+// apart is true when a·g + b·θ has no value in common with that of the set.
+func (p discSet) apart(s interval.Space, g, theta *interval.Form, a, b float64) bool {
+	if a == 0 && b == 0 {
+		return false
 	}
-	return false
+	centre := a*g.Centre + b*theta.Centre
+	radius := math.Abs(a)*g.Rest + math.Abs(b)*theta.Rest
+	size := math.Abs(a*g.Centre) + math.Abs(b*theta.Centre)
+	for k := range s.N {
+		x, y := a*g.Coef[k], b*theta.Coef[k]
+		radius += math.Abs(x + y)
+		size += math.Abs(x) + math.Abs(y)
+	}
+	radius += 1e-14*(size+radius) + 1e-12*(math.Abs(a)+math.Abs(b))
+	return centre-radius > p.support(a, b) || centre+radius < -p.support(-a, -b)
+}
+
+// support is the greatest a·g + b·θ over the set. Its boundary is z = −ln(1 − w), |w/(1 − w)| = radius, with outward normal w: the point where
+// the normal is (a, b) has w = r·e^(jφ), φ the direction of (a, b), and (1 − m²)·r² + 2m²·cos φ·r − m² = 0.
+func (p discSet) support(a, b float64) float64 {
+	length := math.Hypot(a, b)
+	cos, sin := a/length, b/length
+	m2 := p.radius * p.radius
+	r := (-m2*cos + math.Sqrt(m2*m2*cos*cos+m2*(1-m2))) / (1 - m2)
+	x, y := 1-r*cos, -r*sin
+	return -a*math.Log(x*x+y*y)/2 - b*math.Atan2(y, x)
 }
 
 func (p discSet) worsens(s interval.Space, g, theta *interval.Form, frequency int) (d [interval.Symbols]float64) {

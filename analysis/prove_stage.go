@@ -19,7 +19,7 @@ type stageForms struct {
 // (theory sheet sections 2 and 3, written with the load as one admittance):
 //
 //	re = r̄ + ρ·var b          ρ = 1/(G + Σ 1/rk), what the node's voltage steps by per ampere
-//	F  = Δ(a·m·Vg − b·(V + ρ(b·i − I)) − r·i − c·VF)
+//	F  = Δ(a·m·Vg − b·(V + ρ(b·i − I)) − r·i − c·VF) + b̄·ρ·Δb·i
 //	vo/d = (Δb·i·(re + s·L) + b̄·F) / ((re + s·L)·Y(s) + b̄²)
 //
 // Both sides are multiplied by Π(1 + s·rk·Ck), so that everything is a polynomial.
@@ -63,6 +63,12 @@ func (e *enclosed) stageOver(c *cell) (out stageForms, why string) {
 	s.Sub(&f, &f, &t)
 	s.Scale(&t, &op.drop, on.C-off.C)
 	s.Sub(&f, &f, &t)
+	if on.B != off.B { // the mean output voltage already has the step that Δb·i makes at the node
+		s.Mul(&t, &rho, &op.current)
+		s.Mul(&t, &t, &op.meanB)
+		s.Scale(&t, &t, on.B-off.B)
+		s.Add(&f, &f, &t)
+	}
 	s.Mul(&f, &f, &op.meanB)
 
 	// modulator: control-ratio/ramp, the ramp in proportion to the input with feed-forward

@@ -22,6 +22,16 @@ func (s Space) AddComplex(d, a, b *Complex) {
 	s.Add(&d.Im, &a.Im, &b.Im)
 }
 
+// Size bounds |z|.
+func (s Space) Size(z *Complex) (least, most float64) {
+	rl, rh := s.Bounds(&z.Re)
+	il, ih := s.Bounds(&z.Im)
+	near := func(low, high float64) float64 { return math.Max(0, math.Max(low, -high)) }
+	far := func(low, high float64) float64 { return math.Max(math.Abs(low), math.Abs(high)) }
+	a, b, c, d := near(rl, rh), near(il, ih), far(rl, rh), far(il, ih)
+	return math.Sqrt(a*a+b*b) * (1 - 8*unit), math.Sqrt(c*c+d*d) * (1 + 8*unit)
+}
+
 // LogPolar adds sign·ln|z| to magnitude and sign·arg z to phase, arg z around the principal value of the centre; false, and nothing is
 // added, where z may be zero or its range is too wide about its centre.
 //
@@ -67,5 +77,29 @@ func (s Space) LogPolar(magnitude, phase *Form, z *Complex, sign float64) bool {
 	a := Form{Centre: argr - sqIm/4, Coef: w.Im.Coef, Rest: error + 16*unit*(1+math.Abs(argr))}
 	s.combine(magnitude, magnitude, &m, sign)
 	s.combine(phase, phase, &a, sign)
+	return true
+}
+
+// ExpPolar sets z = e^(magnitude + j·phase); false where the range is too wide. With w the deviation from the centre, e^w = 1 + w + …, and
+// what follows is at most |w|²·e^|w|/2.
+func (s Space) ExpPolar(z *Complex, magnitude, phase *Form) bool {
+	all := magnitude.Rest + phase.Rest
+	for i := range s.N {
+		a, b := magnitude.Coef[i], phase.Coef[i]
+		all += math.Sqrt(a*a + b*b)
+	}
+	all *= slack
+	if !(all < 1) || !(math.Abs(magnitude.Centre) < 600) {
+		return false
+	}
+	size := math.Exp(magnitude.Centre)
+	sin, cos := math.Sincos(phase.Centre)
+	x, y := size*cos, size*sin
+	rest := size*(magnitude.Rest+phase.Rest+all*all*math.Exp(all)/2)*slack + 64*unit*size*(1+math.Abs(phase.Centre)+math.Abs(magnitude.Centre))*(1+all)
+	*z = Complex{Form{Centre: x, Rest: rest}, Form{Centre: y, Rest: rest}}
+	for i := range s.N {
+		a, b := magnitude.Coef[i], phase.Coef[i]
+		z.Re.Coef[i], z.Im.Coef[i] = x*a-y*b, y*a+x*b
+	}
 	return true
 }
