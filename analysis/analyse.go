@@ -47,7 +47,10 @@ func Analyse(ctx context.Context, d *Design, o Options) (*Result, error) {
 		return nil, err
 	}
 	h := &hunt{ctx: ctx, plan: p, team: team, all: newTally()}
-	r := &Result{}
+	r := &Result{Depth: Quick}
+	if p.full {
+		r.Depth = Full
+	}
 	if err := h.follow(r); err != nil {
 		return nil, fmt.Errorf("analysing the design: %w", err)
 	}

@@ -39,6 +39,7 @@ type Result struct {
 	Corners   []Corner
 	Operating int
 	Worst     Worsts
+	Depth     Depth  // Quick or Full
 	Analysed  int    // points evaluated, kept or not
 	Complete  bool   // every extreme of every tolerance that moves the loop was visited at every operating corner
 	Method    string // e.g. "extreme-value, 20576 corners, refined"

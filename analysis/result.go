@@ -1,5 +1,7 @@
 package analysis
 
+import "slices"
+
 // gather puts the corners of all units in order: nominal, the operating corners with nominal parts, everything else, each
 // assignment once. The first units are the operating corners, which begin with nominal parts; the one after them is nominal.
 func (r *Result) gather(p *plan, found [][]Corner) {
@@ -58,4 +60,15 @@ func (r *Result) explain(p *plan, t *team) error {
 		w.explain(c, ripple[list[unit]])
 		return nil
 	})
+}
+
+// Add takes in one more analysed point, as At gives it, and finds the worst figures anew.
+func (r *Result) Add(c Corner) {
+	r.Corners = append(r.Corners, c)
+	r.Worst = worsts(r.Corners)
+}
+
+// Has says whether a point is among the corners kept.
+func (r *Result) Has(at []Setting) bool {
+	return slices.ContainsFunc(r.Corners, func(c Corner) bool { return slices.Equal(c.At, at) })
 }

@@ -169,7 +169,10 @@ func partsOf(d *Design) []string {
 			list = append(list, a.Path)
 		}
 	}
-	list = slices.DeleteFunc(list, func(path string) bool { return *Field(&p, path) == 0 })
+	list = slices.DeleteFunc(list, func(path string) bool {
+		v := *Field(&p, path)
+		return v == 0 || path == "modulator.control-ratio" && v == 1 && !slices.ContainsFunc(d.Axes, func(a Axis) bool { return a.Path == path })
+	}) // what is left out has no part; neither has a control ratio of one
 	slices.SortStableFunc(list, func(a, b string) int {
 		return cmp.Compare(boolAsInt(!belongsToCircuit(a)), boolAsInt(!belongsToCircuit(b)))
 	})

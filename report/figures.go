@@ -23,15 +23,22 @@ func JSONFigures(w io.Writer, f workspace.File, o FigureOptions) error {
 }
 
 type figuresDocument struct {
-	Design              string       `json:"design"`
-	Title               string       `json:"title"`
-	Topology            string       `json:"topology"`
-	TurnsRatio          figure       `json:"turns-ratio"`
-	EffectiveInductance extent       `json:"effective-inductance"`
-	Corners             []cornerOut  `json:"corners"`
-	Worst               any          `json:"worst"`
-	Method              string       `json:"method"`
-	Outcomes            []outcomeOut `json:"outcomes,omitempty"`
+	Design              string      `json:"design"`
+	Title               string      `json:"title"`
+	Topology            string      `json:"topology"`
+	TurnsRatio          figure      `json:"turns-ratio"`
+	EffectiveInductance extent      `json:"effective-inductance"`
+	Corners             []cornerOut `json:"corners"`
+	Worst               any         `json:"worst"`
+	Method              string      `json:"method"`
+	Complete            bool        `json:"complete"`
+	Analysed            int         `json:"analysed"`
+
+	Sensitivities *sensitivitiesOut `json:"sensitivities,omitempty"`
+	Yield         *yieldOut         `json:"yield,omitempty"`
+	Proof         *proofOut         `json:"proof,omitempty"`
+
+	Outcomes []outcomeOut `json:"outcomes,omitempty"`
 }
 
 type extent struct {
@@ -116,10 +123,17 @@ func figuresOf(f workspace.File, o FigureOptions) figuresDocument {
 		Topology: f.Spec.Text("/topology"),
 		Worst:    worstOf(f.Result, chosen.index),
 		Method:   f.Result.Method,
-		Outcomes: outcomesOf(f.Outcomes),
+		Complete: f.Result.Complete,
+		Analysed: f.Result.Analysed,
+
+		Sensitivities: sensitivitiesOf(f.Sensitivities),
+		Yield:         yieldOf(f.Yield),
+		Proof:         proofOf(f.Proof),
+		Outcomes:      outcomesOf(f.Outcomes),
 	}
 	if o.At != nil {
 		out.Worst, out.Method, out.Outcomes = nil, "one point, as assigned", nil
+		out.Complete, out.Analysed, out.Sensitivities = true, 1, nil
 	}
 	low, nominal, high, turns := stageExtent(f.Spec.Design())
 	out.EffectiveInductance = extent{figure(low), figure(nominal), figure(high)}

@@ -29,7 +29,7 @@ crossover / RHP   crossover over the right-half-plane zero of the same corner`
 // model beside its closed forms, and the worst figures with the corner of each in words.
 func TextFigures(w io.Writer, f workspace.File, o FigureOptions) error {
 	p := figurePage{w: w, file: f, design: f.Spec.Design(), chosen: choose(f.Result, o), o: o}
-	for _, part := range []func() error{p.header, p.corners, p.models, p.model, p.worst, p.outcomes} {
+	for _, part := range []func() error{p.header, p.corners, p.models, p.model, p.worst, p.effects, p.units, p.certificates, p.outcomes} {
 		if err := part(); err != nil {
 			return err
 		}

@@ -32,6 +32,7 @@ type Text struct {
 	o      TextOptions
 	totals Totals
 	corner string // that was told last
+	proofs []string
 }
 
 // NewText starts a report; Close ends it.
@@ -43,6 +44,7 @@ func NewText(w io.Writer, o TextOptions) *Text {
 // reason keeps from being assessed at the same place are one block.
 func (t *Text) File(f workspace.File) {
 	t.totals.Add(f)
+	t.proofs = append(t.proofs, proofLines(f)...)
 	under := consequences(f.Findings)
 	told := make([]bool, len(f.Findings))
 	for i, found := range f.Findings {
@@ -79,6 +81,9 @@ func fold(all []rules.Finding, i int, told []bool) []string {
 
 // Close writes the totals and gives the first error of writing.
 func (t *Text) Close() error {
+	for _, line := range t.proofs {
+		fmt.Fprintln(t.w, line)
+	}
 	if !t.o.NoSummary {
 		fmt.Fprintln(t.w, t.totals.Words())
 	}
@@ -92,6 +97,9 @@ func (t *Text) finding(path string, f rules.Finding, about []string) {
 	t.list(indent, about)
 	t.line(indent, "worst", f.CornerWords)
 	t.corner = f.CornerWords
+	for _, words := range f.Deciders {
+		t.line(indent, "part", words)
+	}
 	for _, r := range f.Related {
 		if r.Doc != nil && r.Doc != f.Doc {
 			p := r.Doc.Position(r.Start)

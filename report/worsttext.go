@@ -48,7 +48,11 @@ func (p *figurePage) worst() error {
 		}
 	}
 	fmt.Fprintf(p.w, "\n%s\n", p.bold("Worst figures ("+p.file.Result.Method+")"))
-	return t.write(p.w, "  ")
+	if err := t.write(p.w, "  "); err != nil || p.file.Result.Complete {
+		return err
+	}
+	_, err := fmt.Fprintln(p.w, "  not complete: not every extreme of every tolerance was visited"+p.deeper())
+	return err
 }
 
 // atCommas breaks a list behind commas so that no part is longer than width where that is possible.
@@ -66,4 +70,12 @@ func atCommas(list string, width int) []string {
 		parts = append(parts, item)
 	}
 	return parts
+}
+
+// deeper says what would visit more.
+func (p *figurePage) deeper() string {
+	if p.file.Result.Depth == analysis.Quick {
+		return "; --depth full looks further"
+	}
+	return ""
 }

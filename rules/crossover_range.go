@@ -20,6 +20,7 @@ var crossoverRange = Rule{
 	Hint:     "Measured is the crossover furthest outside by ratio, the limit the end of the range that it passes. A plain number as target is the upper end.",
 	Reads:    Figures,
 	Place:    targetOrGainPart(crossoverTarget),
+	Moves:    movedCrossover,
 	Applies:  func(c *Case) bool { return c.Spec.Has(crossoverTarget) },
 	Decide: func(c *Case) []Finding {
 		low, high := crossoverLimits(c)

@@ -64,9 +64,10 @@ type Finding struct {
 	Measured    *Number
 	Limit       *Number
 	Related     []schema.Related
-	Cause       *Cause // this finding is a consequence of another in the same list
-	About       string // of not-assessed: the rule that could not be assessed
-	Reason      string // of not-assessed: why
+	Deciders    []string // which parts move the figure most, worded; each is among Related too
+	Cause       *Cause   // this finding is a consequence of another in the same list
+	About       string   // of not-assessed: the rule that could not be assessed
+	Reason      string   // of not-assessed: why
 }
 
 // Cause names the finding that a consequence follows from.

@@ -19,6 +19,7 @@ var gainMargin = Rule{
 	Hint:     "Measured is how much more gain the worst corner bears. A loop whose phase never reaches −180° has none and holds.",
 	Reads:    Figures,
 	Place:    targetOrGainPart("/targets/gain-margin"),
+	Moves:    movedGain,
 	Decide: margin{
 		name: "gain margin", unit: "dB", target: "/targets/gain-margin", limit: gainMarginLimit,
 		of: func(k *analysis.Corner) float64 {

@@ -18,6 +18,7 @@ var modulusMargin = Rule{
 	Hint:     "Measured is the shortest distance to −1, which bounds phase and gain margin together: 0.5 alone guarantees 29° and 6 dB. It finds loops that pass both yet come close in between.",
 	Reads:    Figures,
 	Place:    targetOrGainPart("/targets/modulus-margin"),
+	Moves:    movedModulus,
 	Decide: margin{
 		name: "modulus margin", unit: "", target: "/targets/modulus-margin", limit: modulusMarginLimit,
 		of: func(k *analysis.Corner) float64 {

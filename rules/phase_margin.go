@@ -18,6 +18,7 @@ var phaseMargin = Rule{
 	Hint:     "Measured is the smallest margin of all corners and crossovers, nominal the one with nominal parts: the difference is what tolerances cost. Negative means unstable.",
 	Reads:    Figures,
 	Place:    targetOrGainPart("/targets/phase-margin"),
+	Moves:    movedPhase,
 	Decide: margin{
 		name: "phase margin", unit: "deg", target: "/targets/phase-margin", limit: phaseMarginLimit,
 		of: func(k *analysis.Corner) float64 {

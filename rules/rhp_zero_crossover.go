@@ -19,6 +19,7 @@ var rhpZeroCrossover = Rule{
 	Hint:     "Measured is the crossover at the corner where it comes nearest to the zero of that same corner; the limit is the fraction of that zero. Lower the gain at crossover, or move the zero up with less inductance. The highest crossover over the lowest zero is told as information: they need not meet at one corner.",
 	Reads:    Figures,
 	Place:    gainPart,
+	Moves:    movedCrossover,
 	Applies: func(c *Case) bool {
 		return c.Design.Nominal.Circuit.Topology.HasDutyPeak() || anyCorner(c, func(k *analysis.Corner) bool { return rhpZero(k) > 0 })
 	},

@@ -97,6 +97,7 @@ type Rule struct {
 	Reads  Reading
 	Judges func(*analysis.Corner) bool // the corners that the rule is about; nil: all of them
 	Place  func(*Case) string          // JSON pointer of its findings; nil where each finding has its own
+	Moves  *Moved                      // the figure of the loop that findings are about; nil: none, or not of the loop alone
 	// Unassessed names what else is missing for an assessment, "" when nothing is; nil: nothing ever is.
 	Unassessed func(*Case) string
 }

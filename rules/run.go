@@ -52,6 +52,7 @@ func Judge(c *Case, o RunOptions) Judgement {
 		}
 	}
 	tieCauses(c, j.Findings)
+	nameDeciders(c, j.Findings)
 	Sort(j.Findings)
 	return j
 }

@@ -18,6 +18,7 @@ var switchingCrossover = Rule{
 	Hint:     "Measured is the highest crossover, the limit the fraction of the frequency at which the filter works (twice the switching frequency in bridges and push-pulls). Above it the averaged model promises more phase than there is.",
 	Reads:    Figures,
 	Place:    gainPart,
+	Moves:    movedCrossover,
 	Decide: func(c *Case) []Finding {
 		limit := c.threshold(switchingFraction)
 		corner, ratio := c.worst(func(k *analysis.Corner) float64 { return crossover(k) / k.Plant.FilterFrequency })

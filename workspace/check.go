@@ -16,7 +16,8 @@ type Options struct {
 	Rules    rules.RunOptions
 	Settings rules.Settings
 	Depth    analysis.Depth
-	Jobs     int  // at once, over files and corners together; 0: as many as the machine runs
+	Jobs     int // at once, over files and corners together; 0: as many as the machine runs
+	Study    Study
 	KeepAll  bool // every point analysed is in the result, not only those that show or decide something
 }
 
@@ -60,9 +61,16 @@ func (w *Workspace) CheckDocument(ctx context.Context, doc *schema.Document, o O
 	case err != nil && ctx.Err() == nil:
 		f.fails(doc, err.Error())
 	case c != nil:
-		f.Spec, f.Result = c.Spec, c.Result
-		judged := rules.Judge(c, always(o.Rules))
-		f.Findings, f.Outcomes = judged.Findings, judged.Outcomes
+		if err = o.Study.prove(ctx, c, &f, o.Jobs); err == nil {
+			f.Spec, f.Result = c.Spec, c.Result
+			judged := rules.Judge(c, always(o.Rules))
+			f.Findings, f.Outcomes = append(judged.Findings, rules.Unproved(c, f.Proof)...), judged.Outcomes
+			rules.Sort(f.Findings)
+			err = o.Study.further(ctx, c, &f, o.Jobs)
+		}
+		if err != nil && ctx.Err() == nil {
+			f.fails(doc, err.Error())
+		}
 		for _, found := range f.Findings {
 			f.Defect = f.Defect || found.Rule == defect
 		}

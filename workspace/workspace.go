@@ -34,7 +34,12 @@ type File struct {
 	Result   *analysis.Result // nil when unreadable
 	Findings []rules.Finding  // sorted by position, then rule
 	Outcomes []rules.Outcome  // what became of each rule that was chosen; nil when unreadable
-	Defect   bool             // a rule or the analysis failed inside the program (exit 3)
+
+	Sensitivities *analysis.Sensitivities // these three where the options asked for them
+	Yield         *analysis.Yield
+	Proof         *analysis.Proof
+
+	Defect bool // a rule or the analysis failed inside the program (exit 3)
 }
 
 // Workspace is one tree of spec files with a fixed root: references are followed inside it and nowhere else. Texts that

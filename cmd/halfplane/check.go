@@ -18,7 +18,7 @@ type checkCommand struct {
 	*formFlags
 	failAt        *choice
 	only, without []string
-	quiet         bool
+	quiet, prove  bool
 }
 
 func newCheck() *cobra.Command {
@@ -45,6 +45,7 @@ read, parsed or validated; 3 a defect of the program itself. When several apply,
 	cmd.Flags().StringSliceVar(&c.only, "only", nil, "these rules only (`RULE,...`); what keeps a file from being read is always reported")
 	cmd.Flags().StringSliceVar(&c.without, "without", nil, "all rules but these (`RULE,...`)")
 	cmd.Flags().BoolVar(&c.quiet, "quiet", false, "findings only, no line of totals")
+	cmd.Flags().BoolVar(&c.prove, "prove", false, "certificate: prove each margin at every point of the box of input, load and tolerances; what refutes one is judged like any corner, what stays undecided is a note")
 	c.analysisFlags = addAnalysisFlags(cmd)
 	cobra.CheckErr(cmd.RegisterFlagCompletionFunc("only", completeRules))
 	cobra.CheckErr(cmd.RegisterFlagCompletionFunc("without", completeRules))
@@ -107,6 +108,7 @@ func (c *checkCommand) options() workspace.Options {
 		Rules: rules.RunOptions{Only: c.only, Without: c.without},
 		Depth: c.depthOf(),
 		Jobs:  c.jobs,
+		Study: workspace.Study{Prove: c.prove},
 	}
 }
 

@@ -16,6 +16,9 @@ type figuresCommand struct {
 	*formFlags
 	at      []string
 	corners *choice
+	units   int
+	seed    uint64
+	prove   bool
 }
 
 func newFigures() *cobra.Command {
@@ -35,6 +38,7 @@ in the spec: of the winding's own side, one piece, one phase, before bias derati
 Exit status: 0, or 2 for wrong usage or a file that could not be read, parsed or validated.`,
 		Example: `  halfplane figures shelf/profiler.converter.yaml
   halfplane figures shelf/profiler.converter.yaml --as json --corners all
+  halfplane figures shelf/profiler.converter.yaml --yield 10000 --prove
   halfplane figures shelf/profiler.converter.yaml --at 'input-voltage=9 V,load.current=1.5,inductor.inductance=26.4uH'`,
 		Args:              oneDesign,
 		ValidArgsFunction: completeDesigns,
@@ -43,6 +47,9 @@ Exit status: 0, or 2 for wrong usage or a file that could not be read, parsed or
 	c.formFlags = addFormFlags(cmd)
 	cmd.Flags().StringArrayVar(&c.at, "at", nil, "one point only: `PATH=VALUE,...`")
 	c.corners = addChoice(cmd, "corners", "operating", "which corners are listed: the operating corners and those of the worst figures, or all that were analysed", "operating", "all")
+	cmd.Flags().IntVar(&c.units, "yield", 0, "Monte Carlo: build `N` units at random within the tolerances, tell how many meet the margins, with quantiles and root sum square")
+	cmd.Flags().Uint64Var(&c.seed, "seed", analysis.DefaultSeed, "of the units of --yield: the same `NUMBER` builds the same units")
+	cmd.Flags().BoolVar(&c.prove, "prove", false, "certificate: prove the margins at every point of the box of input, load and tolerances, or find a point that refutes them")
 	c.analysisFlags = addAnalysisFlags(cmd)
 	return cmd
 }
@@ -55,6 +62,9 @@ func (c *figuresCommand) run(cmd *cobra.Command, path string) error {
 	if err := c.analysisFlags.check(); err != nil {
 		return err
 	}
+	if err := c.studyFlags(cmd); err != nil {
+		return err
+	}
 	items, err := workspace.Find([]string{path}, c.root)
 	if err != nil {
 		return err
@@ -65,6 +75,8 @@ func (c *figuresCommand) run(cmd *cobra.Command, path string) error {
 	o := workspace.Options{Depth: c.depthOf(), Jobs: c.jobs, KeepAll: c.corners.value == "all"}
 	if len(c.at) > 0 {
 		o.Depth = analysis.Quick // only the assigned point is shown
+	} else {
+		o.Study = workspace.Study{Sensitivities: true, Units: c.units, Seed: c.seed, Prove: c.prove}
 	}
 	f := items[0].In.CheckFile(cmd.Context(), path, o)
 	if f.Result == nil {
@@ -82,6 +94,22 @@ func (c *figuresCommand) run(cmd *cobra.Command, path string) error {
 		if err := c.write(cmd, out, f, shown); err != nil {
 			return err
 		}
+	}
+	return nil
+}
+
+// studyFlags checks what goes beyond the corners.
+func (c *figuresCommand) studyFlags(cmd *cobra.Command) error {
+	yield := cmd.Flags().Changed("yield")
+	switch {
+	case yield && c.units < 1:
+		return fmt.Errorf("--yield expects a number of units from 1 upwards, not %d", c.units)
+	case cmd.Flags().Changed("seed") && !yield:
+		return fmt.Errorf("--seed belongs to --yield, which is not given")
+	case cmd.Flags().Changed("seed") && c.seed == 0:
+		return fmt.Errorf("--seed expects a number from 1 upwards")
+	case len(c.at) > 0 && (yield || c.prove):
+		return fmt.Errorf("--at gives one point: --yield and --prove look at all of them")
 	}
 	return nil
 }
