@@ -225,7 +225,7 @@ func (b *boxProof) judge(w *worker, x []float64) (counter []float64, value float
 	case w.solveErr != nil || w.buildErr != nil:
 		return nil, nan, "at some points the numbers are outside the models"
 	case w.solution.Mode != plant.Continuous:
-		return nil, nan, fmt.Sprintf("it covers continuous conduction, and part of the range is discontinuous (for example at %.3g V in and %.3g A)",
+		return nil, nan, fmt.Sprintf("a proof covers continuous conduction, and part of the range is discontinuous (for example at %.3g V in and %.3g A)",
 			w.point.Circuit.InputVoltage, w.point.Circuit.LoadCurrent)
 	}
 	if !w.hasLoop() || w.meter.Measure(&w.gain, w.solution.FilterFrequency, &w.figures) != nil {

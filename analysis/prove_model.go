@@ -46,7 +46,7 @@ func enclose(d *Design, moving []int) (*enclosed, string) {
 	}
 	e := &enclosed{design: d, point: d.Nominal.clone(), symbol: make(map[string]int), axes: moving}
 	if len(moving) >= interval.Symbols {
-		return nil, fmt.Sprintf("it covers at most %d ranges and tolerances at once, this design has %d", interval.Symbols-1, len(moving))
+		return nil, fmt.Sprintf("a proof covers at most %d ranges and tolerances at once, this design has %d", interval.Symbols-1, len(moving))
 	}
 	for i, axis := range moving {
 		path := d.Axes[axis].Path
@@ -54,7 +54,7 @@ func enclose(d *Design, moving []int) (*enclosed, string) {
 			path = "output-capacitors.0." + strings.TrimPrefix(path, "output-capacitor.")
 		}
 		if !e.models(path) {
-			return nil, "it takes " + path + " as exact, and here it has a range"
+			return nil, "a proof takes " + path + " as exact, and here it has a range"
 		}
 		e.symbol[path] = i
 	}
@@ -73,19 +73,19 @@ func outside(d *Design) string {
 	c, n := &d.Nominal.Circuit, &d.Nominal.Network
 	switch {
 	case c.Topology.TwoInductor():
-		return fmt.Sprintf("it covers stages with one inductor, and a %v has two", c.Topology)
+		return fmt.Sprintf("a proof covers stages with one inductor, and a %v has two", c.Topology)
 	case c.Modulator.Scheme != plant.VoltageMode:
-		return "it covers voltage mode, and this design is in " + c.Modulator.Scheme.String()
+		return "a proof covers voltage mode, and this design is in " + c.Modulator.Scheme.String()
 	case len(c.Banks) > mostBanks:
-		return fmt.Sprintf("it covers up to %d banks of output capacitors", mostBanks)
+		return fmt.Sprintf("a proof covers up to %d banks of output capacitors", mostBanks)
 	case c.Filter.Capacitance > 0 && (c.Filter.Inductance > 0 || c.Filter.Resistance > 0):
-		return "it covers designs without an input filter"
+		return "a proof covers designs without an input filter"
 	}
 	switch n.Kind {
 	case network.Type1, network.Type2, network.Type3, network.Transconductance:
 		return ""
 	}
-	return "it covers the op-amp networks and the transconductance amplifier, and this one is of kind " + n.Kind.String()
+	return "a proof covers the op-amp networks and the transconductance amplifier, and this one is of kind " + n.Kind.String()
 }
 
 // modelled are the fields whose ranges a proof follows, besides those of banks.

@@ -102,5 +102,7 @@ func (s *server) checked(ctx context.Context, d *desk, snap *snapshot, depth ana
 			}}}
 		}
 	}()
-	return s.check(ctx, d.space, snap.document(), workspace.Options{Depth: depth, Jobs: s.jobs(depth)})
+	return s.check(ctx, d.space, snap.document(), workspace.Options{
+		Depth: depth, Jobs: s.jobs(depth), Study: workspace.Study{Sensitivities: depth == analysis.Full},
+	})
 }

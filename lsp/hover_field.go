@@ -19,7 +19,7 @@ func (p *place) aboutField(info schema.FieldInfo, pointer string) {
 	p.title(title, unit)
 	p.say(info.Description)
 	if q, stale, ok := p.quantity(info, pointer); ok {
-		p.list(append(inWords(q, stale), p.sets(pointer)...))
+		p.list(append(append(inWords(q, stale), p.sets(pointer)...), p.moves(pointer)...))
 		return
 	}
 	if len(info.Names) > 0 {
