@@ -2,7 +2,6 @@ package plant
 
 import (
 	"math"
-	"math/cmplx"
 
 	"halfplane/analysis/transfer"
 )
@@ -55,32 +54,29 @@ func WithRipple(c *Circuit, s *Solution, compensator func(complex128) complex128
 // comparatorRipple sums the harmonics of the duty's rectangle through the averaged plant and the compensator:
 //
 //	s_k = (1 − e^(−j2πkD))/(j2πk) · e^(j2πkD),  ρ = −2 Re Σ s_k C(jωk) cv (jωk − A)⁻¹,  φ = −2 Re Σ s_k C(jωk),  ωk = 2πk ff
-//	r = ρ (ΔA X + ΔB U) + φ (ΔC X + ΔE U),  r_x = ρ ΔA + φ ΔC,  r_d = ∂r/∂D with X held (central difference)
+//	r = ρ (ΔA X + ΔB U) + φ (ΔC X + ΔE U),  r_x = ρ ΔA + φ ΔC,  r_d = ∂r/∂D with X held
+//
+// A and cv are averages over the period, so dA/dD = ΔA and dcv/dD = ΔC; ds_k/dD = e^(j2πkD).
 func (s *Stage) comparatorRipple(c *Circuit, x *steady, m *linear, compensator func(complex128) complex128) (r ripple) {
-	var passed [comparatorHarmonics]complex128
-	for k := range passed {
-		passed[k] = compensator(complex(0, 2*math.Pi*float64(k+1)*s.FilterFrequency)) * complex(c.Modulator.ControlRatio, 0)
-	}
-	row, through := s.rippleRow(m, x.duty, &passed)
 	l := s.layout()
 	on, off := s.interval(&l, onPart), s.interval(&l, offPart)
+	var h harmonics
+	h.n, h.duty, h.frequency = m.order, x.duty, s.FilterFrequency
 	for j := range m.order {
-		r.byState[j] = through * (on.vo[j] - off.vo[j])
+		h.row[j], h.rowStep[j] = m.vo.row[j], on.vo[j]-off.vo[j]
 		for i := range m.order {
-			r.byState[j] += row[i] * (on.dx[i][j] - off.dx[i][j])
+			h.transposed[j][i], h.step[i][j] = m.a[i][j], on.dx[i][j]-off.dx[i][j]
 		}
 	}
-	r.at = m.rippleAt(&row, through)
-	step := 1e-5 * min(x.duty, 1-x.duty)
-	var side [2]float64
-	for i, d := range [2]float64{x.duty - step, x.duty + step} {
-		y := *x
-		y.duty = d
-		shifted := s.average(&y)
-		row, through := s.rippleRow(shifted, d, &passed)
-		side[i] = shifted.rippleAt(&row, through)
+	h.sum(c.Modulator.ControlRatio, compensator)
+	for j := range m.order {
+		r.byState[j] = h.through * h.rowStep[j]
+		for i := range m.order {
+			r.byState[j] += h.rho[i] * h.step[i][j]
+		}
 	}
-	r.byDuty = (side[1] - side[0]) / (2 * step)
+	r.at = m.rippleAt(&h.rho, h.through)
+	r.byDuty = m.rippleAt(&h.rhoByDuty, h.throughByDuty)
 	return r
 }
 
@@ -93,31 +89,83 @@ func (m *linear) rippleAt(row *[maxOrder]float64, through float64) float64 {
 	return sum
 }
 
-// rippleRow returns ρ and φ at a duty.
-func (s *Stage) rippleRow(m *linear, d float64, passed *[comparatorHarmonics]complex128) (rho [maxOrder]float64, phi float64) {
-	n := m.order
-	var transposed square
-	for i := range n {
-		for j := range n {
-			transposed[i][j] = m.a[j][i]
+// harmonics sums ρ and φ with their changes by duty. transposed is Aᵀ, row cv, step and rowStep their changes by duty.
+type harmonics struct {
+	n                int
+	duty, frequency  float64
+	transposed, step square
+	row, rowStep     [maxOrder]float64
+	rho, rhoByDuty   [maxOrder]float64
+	through          float64 // φ
+	throughByDuty    float64
+}
+
+// sum goes through the harmonics. e^(j2πkD) is turned on from one to the next and set right every sixteen.
+func (h *harmonics) sum(ratio float64, compensator func(complex128) complex128) {
+	sin, cos := math.Sincos(2 * math.Pi * h.duty)
+	turn, back := complex(cos, sin), complex(1, 0)
+	for k := 1; k <= comparatorHarmonics; k++ {
+		angle := 2 * math.Pi * float64(k)
+		if back *= turn; k%16 == 0 {
+			sin, cos := math.Sincos(angle * h.duty)
+			back = complex(cos, sin)
+		}
+		omega := angle * h.frequency
+		passed := compensator(complex(0, omega))
+		passed = complex(real(passed)*ratio, imag(passed)*ratio)
+		by := back * passed
+		// (back − 1)/(j·angle)·passed
+		weight := (by - passed) * complex(0, -1/angle)
+		h.through -= 2 * real(weight)
+		h.throughByDuty -= 2 * real(by)
+		if h.n == 2 {
+			h.pair(omega, weight, by)
+			continue
+		}
+		h.several(omega, weight, by)
+	}
+}
+
+// pair adds one harmonic's part of ρ = weight·x, x = cv (jω − A)⁻¹, and of its change by duty, by·x + weight·(ΔC + x·ΔA)(jω − A)⁻¹, for
+// two states by determinants: the commonest stage.
+func (h *harmonics) pair(omega float64, weight, by complex128) {
+	a, b, c, d := h.transposed[0][0], h.transposed[0][1], h.transposed[1][0], h.transposed[1][1]
+	// (jω − a)(jω − d) − b·c
+	re, im := a*d-omega*omega-b*c, -omega*(a+d)
+	size := 1 / (re*re + im*im)
+	inverse := complex(re*size, -im*size)
+	p, q := complex(-a, omega), complex(-d, omega)
+	u, v := complex(h.row[0], 0), complex(h.row[1], 0)
+	x, y := (q*u+complex(b, 0)*v)*inverse, (complex(c, 0)*u+p*v)*inverse
+	u = complex(h.rowStep[0]+real(x)*h.step[0][0]+real(y)*h.step[1][0], imag(x)*h.step[0][0]+imag(y)*h.step[1][0])
+	v = complex(h.rowStep[1]+real(x)*h.step[0][1]+real(y)*h.step[1][1], imag(x)*h.step[0][1]+imag(y)*h.step[1][1])
+	dx, dy := (q*u+complex(b, 0)*v)*inverse, (complex(c, 0)*u+p*v)*inverse
+	h.rho[0] -= 2 * real(weight*x)
+	h.rho[1] -= 2 * real(weight*y)
+	h.rhoByDuty[0] -= 2 * real(by*x+weight*dx)
+	h.rhoByDuty[1] -= 2 * real(by*y+weight*dy)
+}
+
+// several is pair for any number of states.
+func (h *harmonics) several(omega float64, weight, by complex128) {
+	var x, dx [maxOrder]complex128
+	for j := range h.n {
+		x[j] = complex(h.row[j], 0)
+	}
+	if !h.transposed.solveComplex(h.n, complex(0, omega), &x) {
+		x[0] = complex(math.NaN(), 0)
+	}
+	for j := range h.n {
+		dx[j] = complex(h.rowStep[j], 0)
+		for i := range h.n {
+			dx[j] += complex(real(x[i])*h.step[i][j], imag(x[i])*h.step[i][j])
 		}
 	}
-	for k := range passed {
-		turn := 2 * math.Pi * float64(k+1)
-		sin, cos := math.Sincos(turn * d)
-		back := complex(cos, sin)
-		weight := (back - 1) / complex(0, turn) * passed[k]
-		phi -= 2 * real(weight)
-		var x [maxOrder]complex128
-		for j := range n {
-			x[j] = complex(m.vo.row[j], 0)
-		}
-		if !transposed.solveComplex(n, complex(0, turn*s.FilterFrequency), &x) || cmplx.IsNaN(x[0]) {
-			return rho, math.NaN()
-		}
-		for j := range n {
-			rho[j] -= 2 * real(weight*x[j])
-		}
+	if !h.transposed.solveComplex(h.n, complex(0, omega), &dx) {
+		dx[0] = complex(math.NaN(), 0)
 	}
-	return rho, phi
+	for j := range h.n {
+		h.rho[j] -= 2 * real(weight*x[j])
+		h.rhoByDuty[j] -= 2 * real(by*x[j]+weight*dx[j])
+	}
 }
