@@ -29,7 +29,7 @@ func (s *search) visit(x []float64) (int, error) {
 	if i, ok := s.seen[string(s.key)]; ok {
 		return i, nil
 	}
-	s.worker.set(x)
+	s.worker.setShown(x)
 	c, err := s.worker.corner()
 	c.At = s.worker.settings()
 	s.seen[string(s.key)] = len(s.corners)

@@ -21,6 +21,8 @@ type worker struct {
 	circuit []bool     // the axis belongs to the power stage or the modulator
 
 	have               bool // solution and compensator hold for the values now in point
+	complete           bool // the next solution is to be of a point that is shown
+	shown              bool // solution holds what only a point that is shown needs
 	solveErr, buildErr error
 	solution           plant.Solution
 	kept               *plant.Solution // solution with slices of its own, once a corner needed them
@@ -63,8 +65,12 @@ func (w *worker) set(x []float64) {
 func (w *worker) solve(stage, net bool) {
 	w.have = true
 	if stage {
-		w.kept = nil
-		w.solveErr = plant.Solve(&w.point.Circuit, &w.solution)
+		w.kept, w.shown = nil, false
+		if w.complete {
+			w.show()
+		} else {
+			w.solveErr = plant.SolveLoop(&w.point.Circuit, &w.solution)
+		}
 	}
 	if net {
 		w.buildErr = network.Build(&w.point.Network, &w.compensator)
@@ -83,6 +89,7 @@ func (w *worker) hasLoop() bool {
 // corner evaluates the point that was set. The error is a number outside a model's domain; the corner then still holds what
 // could be computed. An output voltage that no duty reaches is a result, not an error.
 func (w *worker) corner() (Corner, error) {
+	w.show()
 	c := Corner{Reached: !errors.Is(w.solveErr, plant.ErrUnreachable), DutyPeak: nan}
 	c.Plant = *w.keep()
 	c.Ideal = noIdeal
@@ -102,6 +109,22 @@ func (w *worker) corner() (Corner, error) {
 	f.Crossovers = slices.Clone(f.Crossovers)
 	c.Loop = &f
 	return c, nil
+}
+
+// show completes the solution of the point that was set.
+func (w *worker) show() {
+	if !w.shown {
+		w.solveErr = plant.Solve(&w.point.Circuit, &w.solution)
+		w.shown = true
+	}
+}
+
+// setShown is set for a point that will be shown: its power stage is solved once, with everything.
+func (w *worker) setShown(x []float64) {
+	w.complete = true
+	w.set(x)
+	w.complete = false
+	w.show()
 }
 
 // keep gives the solution with slices that later points leave alone.

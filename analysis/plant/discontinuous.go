@@ -4,7 +4,7 @@ import "math"
 
 // solveDiscontinuous fills out in discontinuous conduction. ccm is the continuous solution that was found impossible; its duty bounds the search.
 // Sepic, cuk and zeta get the loss-free operating point and no small-signal model; so does a load that draws nothing.
-func (s *Stage) solveDiscontinuous(c *Circuit, ccm *steady, out *Solution) error {
+func (s *Stage) solveDiscontinuous(c *Circuit, ccm *steady, out *Solution, shown bool) error {
 	out.Mode = Discontinuous
 	if s.Load == 0 {
 		out.Duty, out.InductorCurrent, out.InductorRipple, out.InductorPeak = 0, 0, 0, 0
@@ -24,13 +24,15 @@ func (s *Stage) solveDiscontinuous(c *Circuit, ccm *steady, out *Solution) error
 	out.HasModel = true
 	out.ModulatorGain = modulatorGain(&c.Modulator, c.InputVoltage)
 	m := s.averagePulse(p)
-	if err := s.bareResonanceOfPulse(p, m, out); err != nil {
-		return err
+	if shown {
+		if err := s.bareResonanceOfPulse(p, m, out); err != nil {
+			return err
+		}
 	}
 	if err := s.pulseModel(c, p, m, out); err != nil {
 		return err
 	}
-	if s.HasFilter {
+	if s.HasFilter && shown {
 		if err := s.filterRatiosOfPulse(c, p, out); err != nil {
 			return err
 		}

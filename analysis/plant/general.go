@@ -1,15 +1,17 @@
 package plant
 
 // generalModel fills the small-signal model of continuous conduction for every order, with or without input filter and current loop.
-func (s *Stage) generalModel(c *Circuit, x *steady, out *Solution) error {
+func (s *Stage) generalModel(c *Circuit, x *steady, out *Solution, shown bool) error {
 	m := s.average(x)
-	if err := s.bareResonance(x, m, out); err != nil {
-		return err
+	if shown {
+		if err := s.bareResonance(x, m, out); err != nil {
+			return err
+		}
 	}
 	if err := s.controlModel(c, x, m, out); err != nil {
 		return err
 	}
-	if s.HasFilter {
+	if s.HasFilter && shown {
 		return s.filterRatios(c, x, out)
 	}
 	return nil

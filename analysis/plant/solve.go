@@ -14,7 +14,13 @@ var errSingular = errors.New("the averaged model is singular")
 // define. Solve reuses the slices of out. For a single inductor, one bank and no input filter in voltage mode and
 // continuous conduction it allocates nothing in steady state. Errors: ErrUnreachable (errors.Is), or a number outside
 // the model's domain; out then holds no model.
-func Solve(c *Circuit, out *Solution) error {
+func Solve(c *Circuit, out *Solution) error { return solve(c, out, true) }
+
+// SolveLoop is Solve without what only a point that is shown needs: Resonance and Quality where they take a model of their own (behind an
+// input filter, under a current loop, with several banks), and Input.
+func SolveLoop(c *Circuit, out *Solution) error { return solve(c, out, false) }
+
+func solve(c *Circuit, out *Solution, shown bool) error {
 	out.reset()
 	if err := check(c); err != nil {
 		return fmt.Errorf("solving the power stage: %w", err)
@@ -35,9 +41,9 @@ func Solve(c *Circuit, out *Solution) error {
 	x := s.steady(d)
 	var err error
 	if !c.Synchronous && s.discontinuous(&x) {
-		err = s.solveDiscontinuous(c, &x, out)
+		err = s.solveDiscontinuous(c, &x, out, shown)
 	} else {
-		err = s.solveContinuous(c, &x, out)
+		err = s.solveContinuous(c, &x, out, shown)
 	}
 	if err != nil {
 		out.HasModel = false
@@ -60,7 +66,7 @@ func (o *Solution) reset() {
 }
 
 // solveContinuous fills out in continuous conduction.
-func (s *Stage) solveContinuous(c *Circuit, x *steady, out *Solution) error {
+func (s *Stage) solveContinuous(c *Circuit, x *steady, out *Solution, shown bool) error {
 	out.Mode, out.Duty = Continuous, x.duty
 	span := x.duty * s.Period / s.Phases
 	out.InductorCurrent, out.InductorRipple = x.current/s.Phases, x.slope*span
@@ -73,7 +79,7 @@ func (s *Stage) solveContinuous(c *Circuit, x *steady, out *Solution) error {
 	out.ModulatorGain = modulatorGain(&c.Modulator, c.InputVoltage)
 	if s.isSecondOrder() && c.Modulator.Scheme == VoltageMode {
 		s.secondOrder(x, out)
-	} else if err := s.generalModel(c, x, out); err != nil {
+	} else if err := s.generalModel(c, x, out, shown); err != nil {
 		return err
 	}
 	return finishControl(out)
