@@ -2,7 +2,6 @@ package analysis
 
 import (
 	"context"
-	"errors"
 	"fmt"
 )
 
@@ -76,7 +75,7 @@ func (h *hunt) follow(r *Result) error {
 	if h.plan.full {
 		left, err = h.deepen(quick)
 	} else {
-		err = errors.Join(h.quickKinks(quick), h.comparator(quick, h.plan.store))
+		err = h.quickKinks(quick)
 	}
 	if err != nil {
 		return err
@@ -89,7 +88,10 @@ func (h *hunt) follow(r *Result) error {
 	r.Worst = worsts(r.Corners)
 	r.Complete = left.axes == 0
 	r.Method = h.plan.method(r.Analysed, left)
-	return r.explain(h.plan, h.team)
+	if err := r.explain(h.plan, h.team); err != nil || h.plan.full {
+		return err
+	}
+	return h.quickComparator(r)
 }
 
 // deepen is what full depth adds to the operating corners.

@@ -3,45 +3,84 @@ package analysis
 import (
 	"slices"
 
+	"halfplane/analysis/loop"
 	"halfplane/analysis/network"
 	"halfplane/analysis/plant"
 )
 
 // comparator looks for the lowest phase margin with the comparator's ripple counted, among points whose averaged loop is stable: the
 // corners that are worst for the averaged loop need not be worst for the ripple (the highest ESR usually is). It starts at the worst
-// extremes of each operating corner, in quick depth at the worst of all, and goes on by single moves where the ripple
-// costs something.
+// extremes of each operating corner and goes on by single moves where the ripple costs something.
 func (h *hunt) comparator(corners []*tally, axes []int) error {
-	p := h.plan
-	c, n := &p.design.Nominal.Circuit, &p.design.Nominal.Network
-	if c.Modulator.Scheme != plant.VoltageMode || n.Kind == network.Digital {
+	if !h.plan.hasComparator() {
 		return nil
 	}
-	rounds := 3
-	if !p.full {
-		all := newTally()
-		for _, t := range corners {
-			all.merge(t)
-		}
-		corners, rounds = []*tally{all}, 1
-	}
 	_, err := h.run(len(corners), func(s *search, unit int) error {
-		s.ripplePoint(corners[unit], axes, rounds)
+		var starts [][]float64
+		for _, f := range [...]figure{phaseMargin, gainMargin, modulusMargin, highCrossover} {
+			if at := corners[unit].at[f]; at != nil {
+				starts = append(starts, at)
+			}
+		}
+		s.ripplePoint(starts, axes, 3)
 		return nil
 	})
 	return err
 }
 
-// ripplePoint keeps the worst point it finds from the worst ones of a tally.
-func (s *search) ripplePoint(from *tally, axes []int, rounds int) {
-	const costs = 2.5 // degrees that the ripple takes before it is worth a search
+// hasComparator says whether the design has a ramp that an analogue compensator's output is compared with.
+func (p *plan) hasComparator() bool {
+	return p.design.Nominal.Circuit.Modulator.Scheme == plant.VoltageMode && p.design.Nominal.Network.Kind != network.Digital
+}
+
+// quickComparator is what quick depth does of it: from the worst of the corners that were explained on, over what stores energy.
+func (h *hunt) quickComparator(r *Result) error {
+	if !h.plan.hasComparator() {
+		return nil
+	}
+	var worst *Corner
+	for i := range r.Corners {
+		c := &r.Corners[i]
+		if c.Ripple != nil && c.Loop.Stable && (worst == nil || rippleBadness(c.Ripple) < rippleBadness(worst.Ripple)) {
+			worst = c
+		}
+	}
+	if worst == nil || !(worst.Loop.PhaseMargin-worst.Ripple.PhaseMargin > rippleCosts) {
+		return nil
+	}
+	s := newSearch(h.ctx, h.plan, h.team.workers[0])
+	if err := h.team.run(1, func(*worker, int) error {
+		s.ripplePoint([][]float64{valuesOf(worst, make([]float64, len(h.plan.nominal)))}, h.plan.store, 1)
+		return s.ended
+	}); err != nil {
+		return err
+	}
+	for i := range s.corners {
+		if c := &s.corners[i]; !r.Has(c.At) {
+			s.worker.set(valuesOf(c, make([]float64, len(h.plan.nominal))))
+			s.worker.explain(c, true)
+			r.Corners = append(r.Corners, *c)
+		}
+	}
+	return nil
+}
+
+// rippleCosts is how many degrees the ripple takes before a search for its worst is worth it.
+const rippleCosts = 2.5
+
+// rippleBadness ranks figures with ripple: an unstable loop is worse than any margin.
+func rippleBadness(l *loop.Figures) float64 {
+	if !l.Stable {
+		return l.PhaseMargin - 1000
+	}
+	return l.PhaseMargin
+}
+
+// ripplePoint keeps the worst point it finds from the starts.
+func (s *search) ripplePoint(starts [][]float64, axes []int, rounds int) {
 	var x []float64
 	worst, lost := nan, 0.0
-	for _, f := range [...]figure{phaseMargin, gainMargin, modulusMargin, highCrossover} {
-		at := from.at[f]
-		if at == nil || s.ended != nil {
-			continue
-		}
+	for _, at := range starts {
 		if v, less := s.withRipple(at); v < worst || x == nil && v == v {
 			x, worst, lost = slices.Clone(at), v, less
 		}
@@ -49,7 +88,7 @@ func (s *search) ripplePoint(from *tally, axes []int, rounds int) {
 	if x == nil {
 		return
 	}
-	if lost > costs {
+	if lost > rippleCosts {
 		s.plan.box.Descend(x, worst, axes, rounds, func(x []float64) float64 {
 			v, _ := s.withRipple(x)
 			return v
@@ -79,11 +118,7 @@ func (s *search) withRipple(x []float64) (margin, less float64) {
 	if f == nil {
 		return nan, nan
 	}
-	less = r[phaseMargin] - f.PhaseMargin
-	if !f.Stable {
-		return f.PhaseMargin - 1000, less
-	}
-	return f.PhaseMargin, less
+	return rippleBadness(f), r[phaseMargin] - f.PhaseMargin
 }
 
 // keepRipple visits a point and adds the figures with ripple.
