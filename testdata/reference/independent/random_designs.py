@@ -1,7 +1,7 @@
 #!/usr/bin/env python3
 """Compare the program with the independent model on random believable designs.
 
-usage: random_designs.py BINARY COUNT [--seed S] [--only TOPOLOGY,...] [--keep FOLDER]
+usage: random_designs.py BINARY COUNT [--seed S] [--only TOPOLOGY,...] [--keep FOLDER] [--write FOLDER]
 
 Each design is written as a spec file with tolerances and operating ranges; one assignment inside them is put to
 `BINARY figures FILE --at ... --as json` and to the model.  Prints the worst difference of every figure and every
@@ -135,10 +135,18 @@ def main():
     arguments.add_argument("--seed", type=int, default=1)
     arguments.add_argument("--only", default=",".join(TOPOLOGIES))
     arguments.add_argument("--keep", help="folder for the spec files of designs that disagree")
+    arguments.add_argument("--write", help="only write the spec files of all designs to this folder")
     o = arguments.parse_args()
     unknown = set(o.only.split(",")) - set(TOPOLOGIES)
     if unknown:
         arguments.error("unknown topology " + ", ".join(sorted(unknown)))
+    if o.write:
+        os.makedirs(o.write, exist_ok=True)
+        for number in range(o.count):
+            design, _ = generate.random_design(random.Random(f"{o.seed}/{number}"), o.only.split(","))
+            with open(os.path.join(o.write, f"design-{o.seed}-{number}.converter.json"), "w") as f:
+                json.dump(design, f, indent=1, ensure_ascii=False)
+        return 0
     worst, counts, modes, bad = {}, {}, {}, 0
     with tempfile.TemporaryDirectory() as folder:
         for number in range(o.count):
