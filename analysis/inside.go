@@ -9,7 +9,7 @@ import (
 // insides looks between the extremes: the worst assignments of the operating corners over a grid of input and load, and points
 // scattered over the whole box.
 func (h *hunt) insides(corners []*tally, moving []int) ([]*tally, error) {
-	const pieces, each = 8, 200
+	const pieces, each = 12, 200
 	worst := h.plan.distinctWorst(corners)
 	inputs, loads := h.plan.grid(h.plan.input), h.plan.grid(h.plan.load)
 	return h.run(len(inputs)+pieces, func(s *search, unit int) error {

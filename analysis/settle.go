@@ -20,7 +20,7 @@ func (h *hunt) settle(found []*tally, moving []int) error {
 	for f := range manyCrossovers {
 		most := 2
 		if f <= modulusMargin {
-			most = 6
+			most = 8
 		}
 		for _, t := range h.plan.distinctStarts(found, f, most) {
 			starts = append(starts, start{f, slices.Clone(t.at[f]), t.worst[f]})
@@ -40,6 +40,8 @@ func (h *hunt) settle(found []*tally, moving []int) error {
 		if at.f == rhpZero || at.f == crossoverOverZero && p.design.Nominal.Circuit.Topology.TwoInductor() {
 			// a complex pair of zeros leaves the right half-plane somewhere inside: the border is curved
 			p.box.Scatter(at.x, worst, axes, 200, 1, value)
+		} else if at.f <= modulusMargin && len(p.box.Between(at.x, axes)) > 0 {
+			p.box.Scatter(at.x, worst, axes, 150, 1, value) // it lies against a border within the box: of modes, of stability, of a further crossover
 		}
 		s.keep()
 		return nil
