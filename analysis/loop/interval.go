@@ -69,6 +69,13 @@ func onAxis(bottom, top float64) bool {
 
 // couldBeNearer says whether |T| between e^low and e^high leaves room for |1 + T| below the least one known.
 func (k *walker) couldBeNearer(low, high float64) bool {
+	if k.measured != k.least { // it changes many times before it is asked for
+		d := k.least
+		k.measured, k.room, k.angle = d, [2]float64{math.Log1p(-min(d, 1)), math.Log1p(d)}, math.Pi
+		if d < 1 {
+			k.angle = math.Asin(d)
+		}
+	}
 	return high > k.room[0] && low < k.room[1]
 }
 
@@ -81,6 +88,9 @@ func (k *walker) noNearer(low, high, bottom, top float64) bool {
 	if !onAxis(bottom, top) {
 		turn := 2 * math.Pi * math.Round(bottom/(2*math.Pi))
 		angle = min(math.Abs(bottom-turn), math.Abs(top-turn), math.Abs(top-turn-2*math.Pi))
+	}
+	if angle >= k.angle {
+		return true // seen from 0, −1 is at least that far to the side
 	}
 	sin, cos := math.Sincos(min(angle, math.Pi))
 	least := k.least * negligible
@@ -136,11 +146,8 @@ func (k *walker) closest(a, b *node) {
 		d := t * l
 		return (1+real(t))*real(d) + imag(t)*imag(d), math.NaN()
 	}
-	ta, la := k.at(a.w, nil)
-	tb, lb := k.at(b.w, nil)
-	k.evals += 2
-	fa, _ := rate(ta, la)
-	fb, _ := rate(tb, lb)
+	fa, _ := rate(a.t, a.l)
+	fb, _ := rate(b.t, b.l)
 	if fa < 0 && fb > 0 {
 		w, t := k.solve(a, b, fa, fb, rate, 1e-6*math.Min(1, k.least))
 		k.consider(w, t)

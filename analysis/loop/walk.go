@@ -18,7 +18,7 @@ const (
 // node is one evaluated frequency.
 type node struct {
 	u, w  float64    // ln ω, ω
-	t     complex128 // T(jω)
+	t, l  complex128 // T(jω) and d ln T/du
 	g     float64    // ln|T|
 	theta float64    // arg(−T), (−π, π]
 	slot  int        // where its sections' slopes are
@@ -52,6 +52,8 @@ type walker struct {
 	least      float64 // least |1 + T| known
 	leastAt    float64
 	room       [2]float64 // ln|T| must come between these for |1 + T| to be less
+	angle      float64    // and arg(−T) within ± this, where the least is below 1
+	measured   float64    // the least |1 + T| that room and angle belong to
 }
 
 // walk collects everything that the figures are made of.
@@ -59,7 +61,7 @@ func (k *walker) walk() error {
 	k.slopes, k.free, k.stack = k.slopes[:0], k.free[:0], k.stack[:0]
 	k.visits, k.unbounded = 0, false
 	k.margin, k.below, k.above, k.least = math.Inf(1), math.Inf(-1), math.Inf(1), math.Inf(1)
-	k.room = [2]float64{math.Inf(-1), math.Inf(1)}
+	k.room, k.angle, k.measured = [2]float64{math.Inf(-1), math.Inf(1)}, math.Pi, math.Inf(1)
 	k.marginAt, k.belowAt, k.aboveAt, k.leastAt = math.NaN(), math.NaN(), math.NaN(), math.NaN()
 	k.start()
 	left := k.pop()
@@ -142,7 +144,7 @@ func (k *walker) push(u, w float64) {
 	}
 	n.slot = k.free[len(k.free)-1]
 	k.free = k.free[:len(k.free)-1]
-	n.t, _ = k.at(n.w, k.slopesOf(&n))
+	n.t, n.l = k.at(n.w, k.slopesOf(&n))
 	k.evals++
 	n.g, n.theta = polar(n.t)
 	k.consider(n.w, n.t)
@@ -172,7 +174,6 @@ func (k *walker) consider(w float64, t complex128) {
 	}
 	if d := math.Hypot(1+real(t), imag(t)); d < k.least {
 		k.least, k.leastAt = d, w
-		k.room = [2]float64{math.Log1p(-min(d, 1)), math.Log1p(d)}
 	}
 }
 
