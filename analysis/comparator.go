@@ -2,6 +2,7 @@ package analysis
 
 import (
 	"slices"
+	"strings"
 
 	"halfplane/analysis/loop"
 	"halfplane/analysis/network"
@@ -33,7 +34,7 @@ func (p *plan) hasComparator() bool {
 	return p.design.Nominal.Circuit.Modulator.Scheme == plant.VoltageMode && p.design.Nominal.Network.Kind != network.Digital
 }
 
-// quickComparator is what quick depth does of it: from the worst of the corners that were explained on, over what stores energy.
+// quickComparator is what quick depth does of it: from the worst of the corners that were explained on, over the ESRs.
 func (h *hunt) quickComparator(r *Result) error {
 	if !h.plan.hasComparator() {
 		return nil
@@ -50,7 +51,7 @@ func (h *hunt) quickComparator(r *Result) error {
 	}
 	s := newSearch(h.ctx, h.plan, h.team.workers[0])
 	if err := h.team.run(1, func(*worker, int) error {
-		s.ripplePoint([][]float64{valuesOf(worst, make([]float64, len(h.plan.nominal)))}, h.plan.store, 1)
+		s.ripplePoint([][]float64{valuesOf(worst, make([]float64, len(h.plan.nominal)))}, h.plan.resistances(), 1)
 		return s.ended
 	}); err != nil {
 		return err
@@ -63,6 +64,17 @@ func (h *hunt) quickComparator(r *Result) error {
 		}
 	}
 	return nil
+}
+
+// resistances picks the axes that are ESRs.
+func (p *plan) resistances() []int {
+	var list []int
+	for _, axis := range p.store {
+		if strings.HasSuffix(p.design.Axes[axis].Path, ".esr") {
+			list = append(list, axis)
+		}
+	}
+	return list
 }
 
 // rippleCosts is how many degrees the ripple takes before a search for its worst is worth it.

@@ -72,10 +72,12 @@ var comparatorRipple = Rule{
 	},
 }
 
-// rippleScore ranks corners whose averaged loop is stable: the lower the margin with ripple the higher, unstable ones first.
+// rippleScore ranks corners whose averaged loop is stable: the lower the margin with ripple the higher, unstable ones first. At the very
+// edge of stability, which the analysis closes in on, anything tips the loop over: that is no news of the ripple.
 func rippleScore(k *analysis.Corner) float64 {
+	const edge = 0.1 // degrees
 	switch {
-	case !hasRipple(k) || !k.Loop.Stable:
+	case !hasRipple(k) || !k.Loop.Stable || k.Loop.PhaseMargin < edge:
 		return math.NaN()
 	case !k.Ripple.Stable:
 		return 1000 + unstableScore(k.Ripple.PhaseMargin)
