@@ -229,7 +229,7 @@ func share(v float64) string {
 	case v == 1:
 		return "100 %"
 	case v > 0.9995:
-		return fmt.Sprintf("%.4g %%", math.Floor(v*1e6)/1e4)
+		return fmt.Sprintf("%.2f %%", math.Floor(v*1e4)/1e2)
 	}
 	return shown(v, "%")
 }
