@@ -144,22 +144,6 @@ func (h *hunt) run(units int, do func(s *search, unit int) error) ([]*tally, err
 	return found, nil
 }
 
-// operating works through nominal and the operating corners and gives each corner's tally.
-func (h *hunt) operating() ([]*tally, error) {
-	p := h.plan
-	found, err := h.run(len(p.points)+1, func(s *search, unit int) error {
-		if unit == len(p.points) {
-			_, err := s.visit(p.nominal)
-			return err
-		}
-		return s.operating(p.points[unit])
-	})
-	if err != nil {
-		return nil, err
-	}
-	return found[:len(p.points)], nil
-}
-
 // method says in words how the worst corners were found, and what was left out.
 func (p *plan) method(analysed int, left leftOut) string {
 	switch {

@@ -34,7 +34,7 @@ func (p *plan) hasComparator() bool {
 	return p.design.Nominal.Circuit.Modulator.Scheme == plant.VoltageMode && p.design.Nominal.Network.Kind != network.Digital
 }
 
-// quickComparator is what quick depth does of it: from the worst of the corners that were explained on, over the ESRs.
+// quickComparator is what quick depth does of it: from the worst of the corners that were explained on, with each ESR at its highest.
 func (h *hunt) quickComparator(r *Result) error {
 	if !h.plan.hasComparator() {
 		return nil
@@ -49,21 +49,30 @@ func (h *hunt) quickComparator(r *Result) error {
 	if worst == nil || !(worst.Loop.PhaseMargin-worst.Ripple.PhaseMargin > rippleCosts) {
 		return nil
 	}
-	s := newSearch(h.ctx, h.plan, h.team.workers[0])
-	if err := h.team.run(1, func(*worker, int) error {
-		s.ripplePoint([][]float64{valuesOf(worst, make([]float64, len(h.plan.nominal)))}, h.plan.resistances(), 1)
-		return s.ended
-	}); err != nil {
-		return err
-	}
-	for i := range s.corners {
-		if c := &s.corners[i]; !r.Has(c.At) {
-			s.worker.set(valuesOf(c, make([]float64, len(h.plan.nominal))))
-			s.worker.explain(c, true)
-			r.Corners = append(r.Corners, *c)
+	w, x := h.team.workers[0], valuesOf(worst, make([]float64, len(h.plan.nominal)))
+	return h.team.run(1, func(*worker, int) error {
+		s := newSearch(h.ctx, h.plan, w)
+		least := rippleBadness(worst.Ripple)
+		for _, axis := range h.plan.resistances() {
+			before := x[axis]
+			if x[axis] = h.plan.box.Max[axis]; before == x[axis] {
+				continue
+			}
+			if v, _ := s.withRipple(x); v < least {
+				least = v
+				continue
+			}
+			x[axis] = before
 		}
-	}
-	return nil
+		if at := valuesOf(worst, make([]float64, len(x))); slices.Equal(x, at) || s.ended != nil {
+			return s.ended
+		}
+		s.keepRipple(x)
+		c := s.corners[0]
+		w.explain(&c, true)
+		r.Corners = append(r.Corners, c)
+		return nil
+	})
 }
 
 // resistances picks the axes that are ESRs.

@@ -83,9 +83,8 @@ func (s *search) keep() {
 	}
 }
 
-// operating works through one operating corner as quick depth does: nominal parts, all vertices of what stores energy, then for
-// every figure the other tolerances by the sign of their sensitivity at its worst vertex.
-func (s *search) operating(o operatingPoint) error {
+// vertices visits one operating corner with nominal parts and at all extremes of what stores energy.
+func (s *search) vertices(o operatingPoint) error {
 	x := s.plan.at(o)
 	if _, err := s.visit(x); err != nil && isNominal(s.plan, x) {
 		return err
@@ -96,15 +95,6 @@ func (s *search) operating(o operatingPoint) error {
 		}
 		return s.ended == nil
 	})
-	for f := range figures {
-		at := worstOf(f, s.corners)
-		if at < 0 || s.ended != nil {
-			continue
-		}
-		x = valuesOf(&s.corners[at], x)
-		s.guide(f, x, s.corners[at].Loop, s.plan.other)
-		_, _ = s.visit(x)
-	}
 	return s.ended
 }
 

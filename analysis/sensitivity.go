@@ -11,23 +11,6 @@ import (
 	"halfplane/analysis/transfer"
 )
 
-// guide moves the axes in x to the extreme that makes the figure worse, to first order, at x, whose figures are given. An axis
-// that changes nothing stays.
-//
-// The loop gain changes by δ = ln T(max) − ln T(min) at a fixed frequency when one axis runs from min to max. With l = d ln T/du,
-// u = ln ω (all first order):
-//
-//	crossover        δu = −Re δ/Re l                 phase margin    δm = Im δ + Im l·δu
-//	phase crossover  δu = −Im δ/Im l                 gain margin     −(Re δ + Re l·δu)
-//	modulus margin   Re((1+T)*·T·δ)/|1+T|
-func (s *search) guide(f figure, x []float64, figures *loop.Figures, axes []int) {
-	moved := append([]float64(nil), x...)
-	for i, change := range s.changesAt(f, x, figures, axes) {
-		moved[axes[i]] = worseEnd(s.plan, axes[i], change, x[axes[i]])
-	}
-	copy(x, moved)
-}
-
 // worseEnd is the end of an axis at which a figure is worse to first order, when it changes by change from the axis's min to its
 // max; the value now where nothing changes.
 func worseEnd(p *plan, axis int, change, now float64) float64 {
@@ -38,20 +21,6 @@ func worseEnd(p *plan, axis int, change, now float64) float64 {
 		return p.box.Min[axis]
 	}
 	return now
-}
-
-// changes measures the point x and gives the first-order changes of the figure's badness there.
-func (s *search) changes(f figure, x []float64, axes []int) []float64 {
-	w := s.worker
-	if f.ofStage() {
-		return s.stageChanges(f, x, axes)
-	}
-	w.set(x)
-	if !w.hasLoop() || w.meter.Measure(&w.gain, w.solution.FilterFrequency, &w.figures) != nil {
-		return nil
-	}
-	figures := w.figures
-	return s.changesAt(f, x, &figures, axes)
 }
 
 // changesAt gives for each of the axes the first-order change of the figure's badness at x (radians, nepers; up to a positive
@@ -125,7 +94,7 @@ func (f figure) change(figures *loop.Figures, t, l, delta complex128, zero float
 		}
 		return change
 	case modulusMargin:
-		return real(cmplx.Conj(1+t) * t * delta)
+		return real(cmplx.Conj(1+t)*t*delta) / cmplx.Abs(1+t)
 	case crossoverOverZero:
 		return zero - crossover
 	case highCrossover:
