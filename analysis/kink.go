@@ -136,8 +136,7 @@ func (s *search) kink(x []float64, axis int) reading {
 func (s *search) sides(x []float64, axis int) []float64 {
 	mode := func(v float64) plant.Mode {
 		x[axis] = v
-		s.worker.set(x)
-		return s.worker.solution.Mode
+		return s.worker.mode(x)
 	}
 	low, high := s.plan.box.Min[axis], s.plan.box.Max[axis]
 	at := mode(low)

@@ -111,6 +111,15 @@ func (w *worker) corner() (Corner, error) {
 	return c, nil
 }
 
+// mode is the conduction mode at x, without solving anything else.
+func (w *worker) mode(x []float64) plant.Mode {
+	for i, v := range x {
+		*w.fields[i] = v
+	}
+	w.have = false
+	return plant.ModeOf(&w.point.Circuit)
+}
+
 // show completes the solution of the point that was set.
 func (w *worker) show() {
 	if !w.shown {

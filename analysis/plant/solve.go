@@ -20,6 +20,24 @@ func Solve(c *Circuit, out *Solution) error { return solve(c, out, true) }
 // input filter, under a current loop, with several banks), and Input.
 func SolveLoop(c *Circuit, out *Solution) error { return solve(c, out, false) }
 
+// ModeOf decides the conduction mode alone, as Solve does; 0 where no duty reaches the output voltage or a number is outside the models'
+// domain.
+func ModeOf(c *Circuit) Mode {
+	if check(c) != nil {
+		return 0
+	}
+	s := Reflect(c)
+	curve := s.conversion()
+	d := curve.duty(s.Output, s.Load)
+	if math.IsNaN(d) {
+		return 0
+	}
+	if x := s.steady(d); !c.Synchronous && s.discontinuous(&x) {
+		return Discontinuous
+	}
+	return Continuous
+}
+
 func solve(c *Circuit, out *Solution, shown bool) error {
 	out.reset()
 	if err := check(c); err != nil {
