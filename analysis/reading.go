@@ -36,6 +36,7 @@ func (w *worker) read(r *reading) {
 type tally struct {
 	worst  reading
 	at     [figures][]float64 // nil: the figure exists at none of them
+	store  []float64          // of at
 	points int
 }
 
@@ -60,7 +61,13 @@ func (t *tally) offer(f figure, x []float64, v float64) {
 		return
 	}
 	t.worst[f] = v
-	t.at[f] = append(t.at[f][:0], x...)
+	if t.at[f] == nil {
+		if t.store == nil {
+			t.store = make([]float64, int(figures)*len(x))
+		}
+		t.at[f] = t.store[int(f)*len(x) : (int(f)+1)*len(x) : (int(f)+1)*len(x)]
+	}
+	copy(t.at[f], x)
 }
 
 // merge takes in another tally, whose points come after those of t.

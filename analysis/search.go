@@ -85,6 +85,7 @@ func (s *search) keep() {
 
 // vertices visits one operating corner with nominal parts and at all extremes of what stores energy.
 func (s *search) vertices(o operatingPoint) error {
+	s.corners = make([]Corner, 0, 1+1<<len(s.plan.store))
 	x := s.plan.at(o)
 	if _, err := s.visit(x); err != nil && isNominal(s.plan, x) {
 		return err

@@ -64,9 +64,9 @@ func statedAmplifier(c *Case) []Finding {
 func assumedAmplifier(c *Case) []Finding {
 	limit, assumed := c.threshold(amplifierPhase), c.threshold(assumedBandwidth)
 	corner, _ := c.worst(func(k *analysis.Corner) float64 {
-		parts := c.parts(k.At)
+		parts := *c.parts(k.At)
 		parts.GainBandwidth = assumed
-		return amplifierLag(parts, crossover(k))
+		return amplifierLag(&parts, crossover(k))
 	})
 	if corner == nil {
 		return nil

@@ -7,6 +7,8 @@ import (
 	"runtime/debug"
 
 	"halfplane/analysis"
+	"halfplane/analysis/network"
+	"halfplane/analysis/plant"
 	"halfplane/schema"
 )
 
@@ -53,5 +55,8 @@ func Prepare(ctx context.Context, doc *schema.Document, r schema.Resolver, setti
 		}
 		return nil, []schema.Problem{beyondModels(spec)}, nil
 	}
-	return &Case{Spec: spec, Design: design, Result: result, Settings: settings, stages: distinctStages(result)}, nil, nil
+	return &Case{
+		Spec: spec, Design: design, Result: result, Settings: settings, stages: distinctStages(result),
+		pointed: &pointed{map[*analysis.Setting]*plant.Circuit{}, map[*analysis.Setting]*network.Parts{}},
+	}, nil, nil
 }

@@ -149,7 +149,7 @@ func (c *Case) keeping(keep func(*analysis.Corner) bool) *Case {
 			*k = analysis.Corner{At: k.At, Ideal: k.Ideal, DutyPeak: k.DutyPeak}
 		}
 	}
-	return &Case{Spec: c.Spec, Design: c.Design, Result: &result, Settings: c.Settings, stages: c.stages}
+	return &Case{Spec: c.Spec, Design: c.Design, Result: &result, Settings: c.Settings, stages: c.stages, pointed: c.pointed}
 }
 
 // quiet says whether a rule has nothing to say about a case. A rule that fails on it says nothing about causes either.

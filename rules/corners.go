@@ -122,8 +122,27 @@ func (c *Case) valueAt(corner *analysis.Corner, path string) float64 {
 	return c.axis(path).Nominal
 }
 
-// circuit is the power stage and modulator at a corner.
+// pointed remembers the circuit and the network of a corner's settings, for the many rules that look at the same corners. Nothing that is
+// remembered is written to.
+type pointed struct {
+	circuits map[*analysis.Setting]*plant.Circuit
+	networks map[*analysis.Setting]*network.Parts
+}
+
+// circuit is the power stage and modulator at a corner; it is not to be changed.
 func (c *Case) circuit(settings []analysis.Setting) *plant.Circuit {
+	if len(settings) == 0 || c.pointed == nil {
+		return c.circuitAt(settings)
+	}
+	known := c.pointed.circuits[&settings[0]]
+	if known == nil {
+		known = c.circuitAt(settings)
+		c.pointed.circuits[&settings[0]] = known
+	}
+	return known
+}
+
+func (c *Case) circuitAt(settings []analysis.Setting) *plant.Circuit {
 	p := analysis.Point{Circuit: c.Design.Nominal.Circuit}
 	p.Circuit.Banks = slices.Clone(p.Circuit.Banks)
 	for _, s := range settings {
@@ -134,8 +153,20 @@ func (c *Case) circuit(settings []analysis.Setting) *plant.Circuit {
 	return &p.Circuit
 }
 
-// parts is the compensator at a corner.
+// parts is the compensator at a corner; it is not to be changed.
 func (c *Case) parts(settings []analysis.Setting) *network.Parts {
+	if len(settings) == 0 || c.pointed == nil {
+		return c.partsAt(settings)
+	}
+	known := c.pointed.networks[&settings[0]]
+	if known == nil {
+		known = c.partsAt(settings)
+		c.pointed.networks[&settings[0]] = known
+	}
+	return known
+}
+
+func (c *Case) partsAt(settings []analysis.Setting) *network.Parts {
 	p := analysis.Point{Network: c.Design.Nominal.Network}
 	p.Network.Zeros, p.Network.Poles = slices.Clone(p.Network.Zeros), slices.Clone(p.Network.Poles)
 	p.Network.Numerator, p.Network.Denominator = slices.Clone(p.Network.Numerator), slices.Clone(p.Network.Denominator)

@@ -118,7 +118,8 @@ type Case struct {
 	Result   *analysis.Result
 	Settings Settings
 
-	stages []int // the corners with distinct power stages; nil: not listed yet
+	pointed *pointed // nil: nothing is remembered
+	stages  []int    // the corners with distinct power stages; nil: not listed yet
 }
 
 // Settings are the severities and thresholds in force for one file; the zero value means the built-in defaults.

@@ -5,6 +5,7 @@ import (
 	"fmt"
 	"os"
 	"path/filepath"
+	"runtime/debug"
 	"testing"
 
 	"github.com/stretchr/testify/require"
@@ -35,6 +36,7 @@ func BenchmarkCheckOneFile(b *testing.B) {
 		analysis.Depth
 	}{{"quick", analysis.Quick}, {"full", analysis.Full}} {
 		b.Run(depth.name, func(b *testing.B) {
+			defer debug.SetGCPercent(debug.SetGCPercent(400)) // as the program does
 			w := Open(filepath.Dir(name))
 			b.ReportAllocs()
 			for b.Loop() {

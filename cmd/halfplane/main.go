@@ -29,7 +29,10 @@ type exit struct{ status status }
 
 func (e exit) Error() string { return fmt.Sprintf("exit %d", e.status) }
 
-func main() { os.Exit(run(os.Args[1:], os.Stdin, os.Stdout, os.Stderr)) }
+func main() {
+	roomy()
+	os.Exit(run(os.Args[1:], os.Stdin, os.Stdout, os.Stderr))
+}
 
 // run is the whole program but for the process around it.
 func run(args []string, in io.Reader, out, errs io.Writer) (code int) {
