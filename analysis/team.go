@@ -26,6 +26,7 @@ func newTeam(ctx context.Context, d *Design, jobs int) (*team, error) {
 		if err != nil {
 			return nil, err
 		}
+		w.meter.StopWhen(func() bool { return ctx.Err() != nil })
 		t.workers = append(t.workers, w)
 	}
 	return t, nil

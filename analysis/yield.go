@@ -70,19 +70,20 @@ func YieldOf(ctx context.Context, d *Design, need Need, o YieldOptions) (*Yield,
 		return nil, err
 	}
 	const batch = 64
-	units := make([]unit, o.Samples)
-	err = team.run((o.Samples+batch-1)/batch, func(w *worker, k int) error {
+	batches := make([][]unit, (o.Samples+batch-1)/batch)
+	err = team.run(len(batches), func(w *worker, k int) error {
 		for i := k * batch; i < min(o.Samples, (k+1)*batch); i++ {
 			if err := ctx.Err(); err != nil {
 				return err
 			}
-			units[i] = p.build(w, need, o.Seed, uint64(i))
+			batches[k] = append(batches[k], p.build(w, need, o.Seed, uint64(i)))
 		}
 		return nil
 	})
 	if err != nil {
 		return nil, fmt.Errorf("building units: %w", err)
 	}
+	units := slices.Concat(batches...)
 	y := &Yield{Samples: o.Samples, Seed: o.Seed}
 	passed := 0
 	for i := range units {

@@ -308,3 +308,15 @@ func TestLogSlopeIsTheDerivative(t *testing.T) {
 		assert.InDelta(t, 0, cmplx.Abs(l-want), 1e-6*(1+cmplx.Abs(want)))
 	}
 }
+
+func TestALongMeasurementCanBeStopped(t *testing.T) {
+	f := transfer.Product{Function: transfer.Function{Gain: 2, Delay: 1, Poles: []complex128{-1e9}}} // turns above one far beyond any step limit
+	var m Meter
+	asked := 0
+	m.StopWhen(func() bool { asked++; return asked == 2 })
+	var out Figures
+	require.ErrorIs(t, m.Measure(&f, 1e5, &out), ErrStopped)
+	require.Equal(t, 2, asked)
+	m.StopWhen(nil)
+	require.ErrorIs(t, m.Measure(&f, 1e5, &out), ErrTooInvolved)
+}

@@ -11,6 +11,10 @@ import (
 // gain. The zero value is ready. One goroutine at a time.
 type Meter struct{ walker walker }
 
+// StopWhen lets a measurement that takes long (a delay of hundreds of periods) end early: ended is asked every fraction of a millisecond, and
+// once it is true Measure returns ErrStopped.
+func (m *Meter) StopWhen(ended func() bool) { m.walker.stop = ended }
+
 // Measure writes every figure of the loop gain t into out; out's list is reused. filterFrequency (Hz) sets the range in which
 // crossovers and margins are looked for, 1e−6 to 10 times it; a sampled loop ends at half its sampling frequency.
 // Stability considers all frequencies. Definitions: theory sheet section 8. Errors: a gain, root, delay or frequency that

@@ -9,6 +9,9 @@ import (
 // ErrTooInvolved says that a loop gain turns too often to be followed (a delay of thousands of periods).
 var ErrTooInvolved = errors.New("the loop gain turns too often to be measured")
 
+// ErrStopped says that Meter.Stop ended a measurement.
+var ErrStopped = errors.New("the measurement was stopped")
+
 const (
 	narrowest = 1e-9  // intervals of ln ω below this are not divided further
 	steps     = 20000 // intervals looked at before a loop gain is given up as too involved
@@ -35,6 +38,7 @@ type walker struct {
 	free   []int   // slots not in use
 	stack  []node  // nodes to the right, the nearest last
 	visits int
+	stop   func() bool // nil: never
 	evals  int
 
 	first, last float64 // ω of the range in which figures are wanted
@@ -75,6 +79,9 @@ func (k *walker) walk() error {
 		if divide {
 			if k.visits++; k.visits > steps {
 				return ErrTooInvolved
+			}
+			if k.visits%256 == 0 && k.stop != nil && k.stop() {
+				return ErrStopped
 			}
 			k.push((left.u+right.u)/2, math.Sqrt(left.w)*math.Sqrt(right.w))
 			continue
