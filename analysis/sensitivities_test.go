@@ -84,11 +84,9 @@ func TestBesideAChangeOfModeTheDifferenceIsTakenOnOneSide(t *testing.T) {
 	d := slowBuck()
 	c := &d.Nominal.Circuit
 	c.Synchronous, c.RectifierDrop = false, 0.4
-	w, err := newWorker(d)
-	require.NoError(t, err)
 	p, err := newPlan(&Design{Nominal: d.Nominal, Axes: []Axis{{"load.current", 0.05, 0.5, 3}}}, Options{})
 	require.NoError(t, err)
-	w, err = newWorker(p.design)
+	w, err := newWorker(p.design)
 	require.NoError(t, err)
 	s := newSearch(context.Background(), p, w)
 	sides := s.sides([]float64{0.5}, 0)

@@ -31,7 +31,6 @@ type explorer struct {
 	fields []*float64
 	meter  loop.Meter
 	best   map[string]sighting
-	only   string // refining this figure alone
 }
 
 type sighting struct {
