@@ -86,22 +86,22 @@ func certify(ctx context.Context, p *plan, team *team, f figure, limit float64, 
 	if c.Verdict == Refuted {
 		return c, nil
 	}
-	h := &hunt{ctx: ctx, plan: p, team: team, all: newTally()}
-	moving, err := h.moving()
-	if err != nil {
-		return nil, err
-	}
-	for _, axis := range [2]int{p.load, p.input} {
-		if p.wide(axis) {
-			moving = append([]int{axis}, moving...)
-		}
-	}
-	e, why := enclose(p.design, moving)
+	e, why := enclose(p.design)
 	if why != "" {
 		c.Why = why
 		return c, nil
 	}
 	b := &boxProof{enclosed: e, plan: p, f: f, limit: limit, set: setOf(f, limit)}
+	// The one point at which the loop must be seen to be stable: everywhere else it follows.
+	at, v, why := b.judge(team.workers[0], p.nominal)
+	switch {
+	case at != nil:
+		c.Verdict, c.At, c.Value = Refuted, b.settings(at), v
+		return c, nil
+	case why != "":
+		c.Why = why
+		return c, nil
+	}
 	return c, b.run(ctx, team, c, o.Boxes)
 }
 
@@ -132,11 +132,12 @@ const wave = 64
 
 // run is the branch and bound: the latest tasks first, so that few are kept.
 func (b *boxProof) run(ctx context.Context, team *team, c *Certificate, budget int) error {
-	first := task{open: b.stretches()}
+	var first task
 	for _, axis := range b.axes {
 		first.low, first.high = append(first.low, b.box.Min[axis]), append(first.high, b.box.Max[axis])
 	}
 	b.whole = cell{slices.Clone(first.low), slices.Clone(first.high)}
+	first.open = b.stretches()
 	stack := []task{first}
 	var stuck []task
 	for len(stack) > 0 && c.Boxes < budget && len(stuck) < wave {
@@ -203,7 +204,12 @@ func (b *boxProof) conclude(c *Certificate, left []task) {
 
 // stretches divides all frequencies: the range of the margins (theory sheet section 8), some decades on either side, and the ends.
 func (b *boxProof) stretches() []segment {
-	low, high := math.Log(2*math.Pi*1e-6*b.stage.FilterFrequency), math.Log(2*math.Pi*10*b.stage.FilterFrequency)
+	least, most := b.stage.FilterFrequency, b.stage.FilterFrequency
+	if i, moves := b.symbol["switching-frequency"]; moves {
+		multiple := b.point.Circuit.Topology.FilterMultiple()
+		least, most = b.whole.low[i]*multiple, b.whole.high[i]*multiple
+	}
+	low, high := math.Log(2*math.Pi*1e-6*least), math.Log(2*math.Pi*10*most)
 	const below, above = 9, 5
 	return []segment{{fromZero, 0, low - below}, {outRange, low - below, low}, {inRange, low, high}, {outRange, high, high + above}, {toEnd, high + above, 0}}
 }

@@ -138,7 +138,7 @@ func (e *enclosed) logarithms(list []enclosedPolynomial, sign float64, powers *[
 // largeBelow is true when |T| > 1 at every frequency from 0 to e^u: with poles at the origin taken out, T·s^m there and ω^m ≤ e^(m·u).
 func (e *enclosed) largeBelow(l *loopForms, u float64) bool {
 	var powers [6]interval.Form
-	e.powersTo(math.Exp(u)*(1+1e-12), &powers)
+	powersTo(math.Exp(u)*(1+1e-12), &powers)
 	var g, theta interval.Form
 	if l.integrators < 0 || !e.logarithms(l.numerators, 1, &powers, &g, &theta) || !e.logarithms(l.denominators, -1, &powers, &g, &theta) {
 		return false
@@ -152,7 +152,7 @@ func (e *enclosed) largeBelow(l *loopForms, u float64) bool {
 func (e *enclosed) smallAbove(l *loopForms, u float64) bool {
 	s := e.space
 	var powers [6]interval.Form
-	e.powersTo(math.Exp(-u)*(1+1e-12), &powers)
+	powersTo(math.Exp(-u)*(1+1e-12), &powers)
 	var g, theta interval.Form
 	falls := l.integrators
 	upper := 0.0

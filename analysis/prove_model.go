@@ -39,30 +39,73 @@ type branchWeight struct {
 	c, r             float64
 }
 
-// enclose prepares a design, or says in a clause why no proof covers it. moving are the axes that change the loop.
-func enclose(d *Design, moving []int) (*enclosed, string) {
+// enclose prepares a design, or says in a clause why no proof covers it.
+func enclose(d *Design) (*enclosed, string) {
 	if why := outside(d); why != "" {
 		return nil, why
 	}
-	e := &enclosed{design: d, point: d.Nominal.clone(), symbol: make(map[string]int), axes: moving}
-	if len(moving) >= interval.Symbols {
-		return nil, fmt.Sprintf("a proof covers at most %d ranges and tolerances at once, this design has %d", interval.Symbols-1, len(moving))
-	}
-	for i, axis := range moving {
-		path := d.Axes[axis].Path
+	e := &enclosed{design: d, point: d.Nominal.clone(), symbol: make(map[string]int)}
+	for axis, a := range d.Axes {
+		if !(a.Min < a.Max) || inert(d, a.Path) {
+			continue
+		}
+		path := a.Path
 		if strings.HasPrefix(path, "output-capacitor.") {
 			path = "output-capacitors.0." + strings.TrimPrefix(path, "output-capacitor.")
 		}
 		if !e.models(path) {
 			return nil, "a proof takes " + path + " as exact, and here it has a range"
 		}
-		e.symbol[path] = i
+		e.symbol[path] = len(e.axes)
+		e.axes = append(e.axes, axis)
 	}
-	e.frequency = len(moving)
-	e.space.N = len(moving) + 1
+	if len(e.axes) >= interval.Symbols {
+		return nil, fmt.Sprintf("a proof covers at most %d ranges and tolerances at once, this design has %d", interval.Symbols-1, len(e.axes))
+	}
+	e.frequency = len(e.axes)
+	e.space.N = len(e.axes) + 1
 	e.stage = plant.Reflect(&e.point.Circuit)
 	e.weigh()
 	return e, ""
+}
+
+// inert says whether a field has no part in the loop gain of a covered design, whatever its value.
+func inert(d *Design, path string) bool {
+	c := &d.Nominal.Circuit
+	room, key, _ := strings.Cut(path, ".")
+	switch room {
+	case "magnetizing-inductance", "second-inductor", "coupling-capacitor":
+		return true
+	case "input-filter":
+		return !strings.HasSuffix(key, "capacitance") && c.Filter.Capacitance == 0
+	case "modulator":
+		return key == "current-sense-gain" || key == "slope-compensation"
+	case "turns":
+		return !c.Topology.Isolated()
+	case "compensator":
+		return !slices.Contains(networkFields(d), key)
+	}
+	return false
+}
+
+// networkFields lists what of a compensator its transfer function holds.
+func networkFields(d *Design) []string {
+	n := &d.Nominal.Network
+	parts := []string{"upper-resistor", "integrator-capacitor"}
+	if n.Kind != network.Type1 {
+		parts = append(parts, "feedback-resistor", "rolloff-capacitor")
+	}
+	switch n.Kind {
+	case network.Type3:
+		parts = append(parts, "lead-resistor", "lead-capacitor")
+	case network.Transconductance:
+		return append(parts, "lead-resistor", "lead-capacitor", "lower-resistor", "transconductance", "output-resistance")
+	}
+	ranged := slices.ContainsFunc(d.Axes, func(a Axis) bool { return strings.HasPrefix(a.Path, "compensator.amplifier.") })
+	if ranged || n.GainBandwidth > 0 || n.OpenLoopGain > 0 {
+		parts = append(parts, "lower-resistor", "amplifier.gain-bandwidth", "amplifier.open-loop-gain")
+	}
+	return parts
 }
 
 // mostBanks bounds the banks of a design that a proof covers; the load's own capacitance comes on top.
@@ -90,7 +133,7 @@ func outside(d *Design) string {
 
 // modelled are the fields whose ranges a proof follows, besides those of banks.
 var modelled = []string{
-	"input-voltage", "load.current", "load.capacitance", "load.esr", "inductor.inductance", "inductor.resistance",
+	"switching-frequency", "input-voltage", "output-voltage", "turns.primary", "turns.secondary", "load.current", "load.capacitance", "load.esr", "inductor.inductance", "inductor.resistance",
 	"switch.on-resistance", "rectifier.forward-drop", "rectifier.resistance", "modulator.ramp-amplitude", "modulator.control-ratio",
 	"modulator.delay", "compensator.upper-resistor", "compensator.lower-resistor", "compensator.feedback-resistor",
 	"compensator.integrator-capacitor", "compensator.rolloff-capacitor", "compensator.lead-resistor", "compensator.lead-capacitor",
@@ -99,6 +142,9 @@ var modelled = []string{
 }
 
 func (e *enclosed) models(path string) bool {
+	if path == "output-voltage" { // a bias table makes the capacitance depend on it
+		return !slices.ContainsFunc(e.point.Circuit.Banks, func(b plant.Bank) bool { return len(b.Derating) > 0 })
+	}
 	if rest, ok := strings.CutPrefix(path, "output-capacitors."); ok {
 		_, key, _ := strings.Cut(rest, ".")
 		return key == "capacitance" || key == "esr"

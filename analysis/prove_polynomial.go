@@ -109,10 +109,10 @@ func (e *enclosed) exponentials(low, high float64, u *interval.Form, powers *[6]
 	return true
 }
 
-// powersTo fills the powers of a value between 0 and high.
-func (e *enclosed) powersTo(high float64, powers *[6]interval.Form) {
+// powersTo fills the powers of a value between 0 and high. They share no symbol: no power is a straight line in another.
+func powersTo(high float64, powers *[6]interval.Form) {
 	powers[0] = interval.Const(1)
 	for k := 1; k < len(powers); k++ {
-		powers[k] = interval.Range(0, math.Pow(high, float64(k))*(1+1e-12), e.frequency)
+		powers[k] = interval.Anywhere(0, math.Pow(high, float64(k))*(1+1e-12))
 	}
 }

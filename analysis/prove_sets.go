@@ -48,7 +48,7 @@ func eachTurn(s interval.Space, theta *interval.Form, angle float64, avoids func
 	const rounding = 1e-9
 	low, high := s.Bounds(theta)
 	first, last := math.Ceil((low-angle-rounding)/wholeTurn), math.Floor((high+angle+rounding)/wholeTurn)
-	if last-first > 3 {
+	if !(last-first <= 3) { // also when a bound is not a number
 		return false
 	}
 	for k := first; k <= last; k++ {

@@ -38,6 +38,7 @@ func (e *enclosed) stageOver(c *cell) (out stageForms, why string) {
 	s.Add(&re, &re, &op.meanR)
 	inductance := e.value(c, "inductor.inductance")
 	s.Scale(&l, &inductance, e.weights.inductance)
+	e.onPrimary(&l, &op)
 	series := polynomial(re, l)
 
 	y, product := e.admittance(branches, &op.conductance)
@@ -51,7 +52,9 @@ func (e *enclosed) stageOver(c *cell) (out stageForms, why string) {
 	// F, with vo of each interval
 	on, off := e.stage.On, e.stage.Off
 	var f interval.Form
-	s.Affine(&f, &op.input, (on.A-off.A)*e.stage.Drive, -(on.B-off.B)*e.stage.Output, 0)
+	s.Scale(&f, &op.driven, on.A-off.A)
+	s.Scale(&t, &op.output, on.B-off.B)
+	s.Sub(&f, &f, &t)
 	var step interval.Form // Σ over intervals of b·(b·i − I)
 	s.Affine(&step, &op.current, on.B*on.B-off.B*off.B, 0, 0)
 	s.Scale(&t, &op.load, on.B-off.B)
@@ -163,9 +166,12 @@ func (e *enclosed) admittance(branches []branchForms, g *interval.Form) (y, prod
 
 // operatingForms is the operating point over a cell, of the equivalent phase on the output side.
 type operatingForms struct {
-	input, load, drop, conductance interval.Form
-	duty, meanB, varB              interval.Form
-	onR, offR, meanR, current      interval.Form
+	input, output, load, drop, conductance interval.Form
+	driven                                 interval.Form // m·Vg
+	squared                                interval.Form // n² over that of nominal turns, and whether it moves
+	turnsMove                              bool
+	duty, meanB, varB                      interval.Form
+	onR, offR, meanR, current              interval.Form
 }
 
 // operate solves the operating point over a cell: the lowest root of the quadratic p0 + p1·d + p2·d² of package plant (conversion), in the
@@ -174,14 +180,14 @@ type operatingForms struct {
 func (e *enclosed) operate(c *cell) (op operatingForms, why string) {
 	s, w := e.space, &e.weights
 	on, off := e.stage.On, e.stage.Off
-	op.input, op.load, op.drop = e.value(c, "input-voltage"), e.value(c, "load.current"), e.value(c, "rectifier.forward-drop")
-	switch e.point.Circuit.Behaviour {
-	case plant.Resistive:
-		s.Scale(&op.conductance, &op.load, 1/e.stage.Output)
-	case plant.ConstantPower:
-		s.Scale(&op.conductance, &op.load, -1/e.stage.Output)
+	if !e.terminals(c, &op) {
+		return op, notCertain
 	}
 	winding, onR, diode := e.value(c, "inductor.resistance"), e.value(c, "switch.on-resistance"), e.value(c, "rectifier.resistance")
+	e.onPrimary(&winding, &op)
+	if op.turnsMove {
+		s.Mul(&onR, &onR, &op.squared)
+	}
 	e.resistance(&op.onR, &winding, &onR, &diode, w.onWinding, w.onSwitch, w.onDiode)
 	e.resistance(&op.offR, &winding, &onR, &diode, w.offWinding, w.offSwitch, w.offDiode)
 
@@ -193,8 +199,8 @@ func (e *enclosed) operate(c *cell) (op operatingForms, why string) {
 	}
 	// Three coefficients each: of 1, d and d².
 	var volts, loss [3]interval.Form
-	s.Affine(&volts[0], &op.input, off.A*e.stage.Drive, 0, 0)
-	s.Affine(&volts[1], &op.input, (on.A-off.A)*e.stage.Drive, 0, 0)
+	s.Scale(&volts[0], &op.driven, off.A)
+	s.Scale(&volts[1], &op.driven, on.A-off.A)
 	var t interval.Form
 	s.Scale(&t, &op.drop, off.C)
 	s.Sub(&volts[0], &volts[0], &t)
@@ -221,7 +227,8 @@ func (e *enclosed) operate(c *cell) (op operatingForms, why string) {
 			s.Sub(&p[k], &p[k], &t)
 		}
 		if bb[k] != 0 {
-			s.Shift(&p[k], &p[k], -bb[k]*e.stage.Output)
+			s.Scale(&t, &op.output, bb[k])
+			s.Sub(&p[k], &p[k], &t)
 		}
 	}
 	if why := e.duty(&p, &op.duty); why != "" {
@@ -244,6 +251,42 @@ func (e *enclosed) operate(c *cell) (op operatingForms, why string) {
 		return op, e.continuous(c, &op, &rho)
 	}
 	return op, ""
+}
+
+// terminals fills what is seen at input and output: voltages, load and turns.
+func (e *enclosed) terminals(c *cell, op *operatingForms) bool {
+	s := e.space
+	op.input, op.output = e.value(c, "input-voltage"), e.value(c, "output-voltage")
+	op.load, op.drop = e.value(c, "load.current"), e.value(c, "rectifier.forward-drop")
+	s.Scale(&op.driven, &op.input, e.stage.Drive)
+	_, primary := e.symbol["turns.primary"]
+	_, secondary := e.symbol["turns.secondary"]
+	if op.turnsMove = primary || secondary; op.turnsMove {
+		p, ratio := e.value(c, "turns.primary"), e.value(c, "turns.secondary")
+		if !s.Div(&ratio, &ratio, &p) {
+			return false
+		}
+		s.Scale(&ratio, &ratio, 1/e.stage.Turns)
+		s.Mul(&op.driven, &op.driven, &ratio)
+		s.Sqr(&op.squared, &ratio)
+	}
+	switch e.point.Circuit.Behaviour {
+	case plant.Resistive:
+		return s.Div(&op.conductance, &op.load, &op.output)
+	case plant.ConstantPower:
+		if !s.Div(&op.conductance, &op.load, &op.output) {
+			return false
+		}
+		s.Scale(&op.conductance, &op.conductance, -1)
+	}
+	return true
+}
+
+// onPrimary carries a winding's value to the output side where the turns move; nominal turns are in the weights already.
+func (e *enclosed) onPrimary(f *interval.Form, op *operatingForms) {
+	if op.turnsMove && e.point.Circuit.InductorOnPrimary {
+		e.space.Mul(f, f, &op.squared)
+	}
 }
 
 func (e *enclosed) resistance(d, winding, onR, diode *interval.Form, a, b, c float64) {
@@ -294,7 +337,9 @@ func (e *enclosed) duty(p *[3]interval.Form, d *interval.Form) string {
 func (e *enclosed) continuous(c *cell, op *operatingForms, rho *interval.Form) string {
 	s, on := e.space, e.stage.On
 	var volts, t interval.Form
-	s.Affine(&volts, &op.input, on.A*e.stage.Drive, -on.B*e.stage.Output, 0)
+	s.Scale(&volts, &op.driven, on.A)
+	s.Scale(&t, &op.output, on.B)
+	s.Sub(&volts, &volts, &t)
 	s.Affine(&t, &op.current, on.B*on.B, 0, 0)
 	var load interval.Form
 	s.Scale(&load, &op.load, on.B)
@@ -306,10 +351,17 @@ func (e *enclosed) continuous(c *cell, op *operatingForms, rho *interval.Form) s
 	s.Scale(&t, &op.drop, on.C)
 	s.Sub(&volts, &volts, &t)
 	s.Mul(&volts, &volts, &op.duty)
-	s.Scale(&volts, &volts, e.stage.Period/2)
 	inductance := e.value(c, "inductor.inductance")
 	s.Scale(&inductance, &inductance, e.weights.inductance)
+	e.onPrimary(&inductance, op)
 	s.Mul(&inductance, &inductance, &op.current)
+	if _, moves := e.symbol["switching-frequency"]; moves { // i·L·2/T instead of i·L against volts·d·T/2
+		frequency := e.value(c, "switching-frequency")
+		s.Scale(&frequency, &frequency, 2*e.point.Circuit.Topology.FilterMultiple())
+		s.Mul(&inductance, &inductance, &frequency)
+	} else {
+		s.Scale(&volts, &volts, e.stage.Period/2)
+	}
 	s.Sub(&inductance, &inductance, &volts)
 	if low, _ := s.Bounds(&inductance); !(low > 0) {
 		return discontinuousPart

@@ -105,7 +105,7 @@ func TestTheEnclosureHoldsTheLoopGainAtEveryPoint(t *testing.T) {
 			w, err := newWorker(d)
 			require.NoError(t, err)
 			axes := wideAxes(d)
-			e, why := enclose(d, axes)
+			e, why := enclose(d)
 			require.Empty(t, why)
 			measured := 0
 			for range 60 {
@@ -171,7 +171,7 @@ func nominalOf(d *Design) []float64 {
 func TestAPointCellIsTheOrdinaryAnalysis(t *testing.T) {
 	for name, d := range covered() {
 		axes := wideAxes(d)
-		e, why := enclose(d, axes)
+		e, why := enclose(d)
 		require.Empty(t, why, name)
 		var c cell
 		for _, axis := range axes {

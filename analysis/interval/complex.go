@@ -39,7 +39,7 @@ func (s Space) Size(z *Complex) (least, most float64) {
 func (s Space) LogPolar(magnitude, phase *Form, z *Complex, sign float64) bool {
 	x, y := z.Re.Centre, z.Im.Centre
 	size := x*x + y*y
-	if !(size > 0) || math.IsInf(size, 0) {
+	if !(size > 1e-250 && size < 1e250) { // beyond, underflow and overflow would spoil what rounding is taken to be
 		return false
 	}
 	rx, ry := x/size, -y/size

@@ -41,6 +41,14 @@ func Range(low, high float64, i int) (f Form) {
 	return f
 }
 
+// Anywhere is a value between low and high of which nothing else is known: it depends on no symbol.
+func Anywhere(low, high float64) (f Form) {
+	f.Centre = low + (high-low)/2
+	f.Rest = math.Max(high-f.Centre, f.Centre-low)
+	f.Rest += 4 * unit * (math.Abs(f.Centre) + f.Rest)
+	return f
+}
+
 // radius is Σ|Coef|, rounded.
 func (s Space) radius(a *Form) float64 {
 	r := 0.0
