@@ -11,7 +11,8 @@ type loopForms struct {
 	numerators, denominators []enclosedPolynomial
 	integrators              int
 	delay                    interval.Form
-	amplifier                *amplifierForms // another form of the first denominator, nil: none
+	amplifier                *amplifierForms           // another form of the first denominator, nil: none
+	bend                     [interval.Symbols]float64 // square of the half width of each axis over its middle: what straight lines may leave out
 }
 
 // loopOver forms the loop gain over a cell, or says what is not certain there.
@@ -29,6 +30,11 @@ func (e *enclosed) loopOver(c *cell) (l loopForms, why string) {
 	for _, list := range [][]enclosedPolynomial{l.numerators, l.denominators} {
 		for i := range list {
 			list[i] = list[i].trimmed()
+		}
+	}
+	for i := range c.low {
+		if half := (c.high[i] - c.low[i]) / (c.high[i] + c.low[i]); half >= 0 && half <= 1 {
+			l.bend[i] = half * half
 		}
 	}
 	l.integrators, l.delay, l.amplifier = net.integrators, stage.delay, net.amplifier
