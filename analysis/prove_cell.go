@@ -37,7 +37,7 @@ func (b *boxProof) volume(c *cell) float64 {
 	return v
 }
 
-// verdictOf is what became of a task: settled (no children, no counterexample), split, or refuted.
+// outcome is what became of a task: settled (no children, no counterexample), split, or refuted.
 type outcome struct {
 	children []task
 	stuck    *task     // too small to split

@@ -183,7 +183,7 @@ func (e *enclosed) weigh() {
 	}
 }
 
-// cell is a part of the box: a range for each symbol but the frequency's, and how often each was halved.
+// cell is a part of the box: a range for each symbol but the frequency's.
 type cell struct {
 	low, high []float64
 }
