@@ -25,8 +25,8 @@ const defaultBoxes = 1 << 20
 //
 // Refuted comes with a point at which the ordinary analysis finds less. Proved means: the loop is stable at nominal; over the whole box the
 // loop gain keeps out of the set that the margin forbids, which holds −1, at every frequency of the range in which margins
-// count, and is not −1 outside it; |T| > 1 below and |T| < 1 above all of that; no open-loop pole lies on the imaginary axis; so
-// no closed-loop pole can have crossed it (the zero exclusion principle; R. A. Frazer, W. J. Duncan, "On the criteria for the
+// count, and is not −1 outside it; |T| > 1 below and |T| < 1 above all of that. Numerator plus denominator of 1 + T is then nowhere zero
+// on the imaginary axis (where the denominator may vanish the numerator is proved to be larger), so no closed-loop pole can have crossed it (the zero exclusion principle; R. A. Frazer, W. J. Duncan, "On the criteria for the
 // stability of small motions", Proc. Royal Society A 124 (1929), from memory), and the margin holds. Every figure over a part
 // of the box is an affine form rounded outward (package interval); parts that cannot be settled are halved (branch and bound),
 // along the axis that moves the loop most, until the budget is spent. A duty and continuous conduction are part of what is
