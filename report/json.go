@@ -30,7 +30,7 @@ func NewJSON(w io.Writer, version string) *JSON {
 // File adds one file's findings.
 func (j *JSON) File(f workspace.File) {
 	j.totals.Add(f)
-	out := fileOut{Path: clean(f.Path), Status: f.Status.String(), Findings: []findingOut{}, Proof: proofOf(f.Proof), Outcomes: outcomesOf(f.Outcomes)}
+	out := fileOut{Path: clean(f.Path), Status: f.Status.String(), Policy: clean(f.Policy), Findings: []findingOut{}, Proof: proofOf(f.Proof), Outcomes: outcomesOf(f.Outcomes)}
 	for _, found := range f.Findings {
 		out.Findings = append(out.Findings, shape(found))
 	}
@@ -53,6 +53,7 @@ type findingsDocument struct {
 type fileOut struct {
 	Path     string       `json:"path"`
 	Status   string       `json:"status"`
+	Policy   string       `json:"policy,omitempty"`
 	Findings []findingOut `json:"findings"`
 	Proof    *proofOut    `json:"proof,omitempty"`
 	Outcomes []outcomeOut `json:"outcomes,omitempty"`

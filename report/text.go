@@ -4,6 +4,7 @@ import (
 	"bufio"
 	"fmt"
 	"io"
+	"slices"
 	"strings"
 
 	"halfplane/rules"
@@ -28,11 +29,12 @@ func TextFindings(w io.Writer, files []workspace.File, o TextOptions) error {
 
 // Text writes findings file by file.
 type Text struct {
-	w      *bufio.Writer
-	o      TextOptions
-	totals Totals
-	corner string // that was told last
-	proofs []string
+	w        *bufio.Writer
+	o        TextOptions
+	totals   Totals
+	corner   string // that was told last
+	proofs   []string
+	policies []string // in force for some file, each once
 }
 
 // NewText starts a report; Close ends it.
@@ -45,6 +47,9 @@ func NewText(w io.Writer, o TextOptions) *Text {
 func (t *Text) File(f workspace.File) {
 	t.totals.Add(f)
 	t.proofs = append(t.proofs, proofLines(f)...)
+	if f.Policy != "" && !slices.Contains(t.policies, f.Policy) {
+		t.policies = append(t.policies, f.Policy)
+	}
 	under := consequences(f.Findings)
 	told := make([]bool, len(f.Findings))
 	for i, found := range f.Findings {
@@ -85,6 +90,9 @@ func (t *Text) Close() error {
 		fmt.Fprintln(t.w, line)
 	}
 	if !t.o.NoSummary {
+		for _, p := range t.policies {
+			fmt.Fprintln(t.w, "policy "+safe(p))
+		}
 		fmt.Fprintln(t.w, t.totals.Words())
 	}
 	return t.w.Flush()

@@ -14,7 +14,8 @@ import (
 // Options say how files are checked.
 type Options struct {
 	Rules    rules.RunOptions
-	Settings rules.Settings
+	Settings rules.Settings // where no policy file is in force
+	Policy   string         // path of the policy file for all designs, "": each design's nearest halfplane.yaml
 	Depth    analysis.Depth
 	Jobs     int // at once, over files and corners together; 0: as many as the machine runs
 	Study    Study
@@ -53,7 +54,17 @@ func unreadable(path string, err error) File {
 func (w *Workspace) CheckDocument(ctx context.Context, doc *schema.Document, o Options) (f File) {
 	f = File{Path: filepath.ToSlash(doc.Name), Document: doc, Status: Checked}
 	defer isolate(&f, f.Path, doc)
-	c, problems, err := w.prepare(ctx, doc, w, o.Settings, analysis.Options{Depth: o.Depth, Jobs: o.Jobs, KeepAll: o.KeepAll})
+	settings := o.Settings
+	if doc.Kind == schema.Design {
+		p := w.policyOf(absolute(doc.Name), o)
+		if f.Policy = p.path; len(p.problems) > 0 {
+			f.Status = Unreadable
+			f.Findings = rules.FromProblems([]schema.Problem{p.unusable(doc)})
+			return f
+		}
+		settings = p.settings
+	}
+	c, problems, err := w.prepare(ctx, doc, w, settings, analysis.Options{Depth: o.Depth, Jobs: o.Jobs, KeepAll: o.KeepAll})
 	switch {
 	case len(problems) > 0:
 		f.Status = Unreadable

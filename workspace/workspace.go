@@ -34,6 +34,7 @@ type File struct {
 	Result   *analysis.Result // nil when unreadable
 	Findings []rules.Finding  // sorted by position, then rule
 	Outcomes []rules.Outcome  // what became of each rule that was chosen; nil when unreadable
+	Policy   string           // the policy file in force, as it is shown; "": none
 
 	Sensitivities *analysis.Sensitivities // these three where the options asked for them
 	Yield         *analysis.Yield

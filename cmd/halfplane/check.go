@@ -109,6 +109,8 @@ func (c *checkCommand) options() workspace.Options {
 		Depth: c.depthOf(),
 		Jobs:  c.jobs,
 		Study: workspace.Study{Prove: c.prove},
+
+		Policy: c.policy,
 	}
 }
 

@@ -54,6 +54,8 @@ type analysisFlags struct {
 	color *choice
 	jobs  int
 	root  string
+
+	policy string
 }
 
 func addAnalysisFlags(cmd *cobra.Command) *analysisFlags {
@@ -62,6 +64,7 @@ func addAnalysisFlags(cmd *cobra.Command) *analysisFlags {
 		color: addChoice(cmd, "color", "auto", "colours on standard output; auto: on a terminal, unless NO_COLOR is set", "auto", "always", "never"),
 	}
 	cmd.Flags().IntVar(&f.jobs, "jobs", 0, "analyses at once; 0: as many as the machine runs")
+	cmd.Flags().StringVar(&f.policy, "policy", "", "`FILE` with severities and thresholds for all designs (default: each design's nearest halfplane.yaml at or above it)")
 	cmd.Flags().StringVar(&f.root, "root", "", "`FOLDER` that references between files may not leave (default: the git work tree, else the outermost folder with a halfplane.yaml, else the folder named)")
 	return f
 }
@@ -69,6 +72,11 @@ func addAnalysisFlags(cmd *cobra.Command) *analysisFlags {
 func (f *analysisFlags) check() error {
 	if f.jobs < 0 {
 		return fmt.Errorf("--jobs expects a number from 0 upwards, not %d", f.jobs)
+	}
+	if f.policy != "" {
+		if info, err := os.Stat(f.policy); err != nil || info.IsDir() {
+			return fmt.Errorf("--policy: there is no file %s", f.policy)
+		}
 	}
 	if f.root == "" {
 		return nil
