@@ -1,8 +1,11 @@
 package analysis
 
 import (
+	"errors"
 	"math"
 	"slices"
+
+	"halfplane/analysis/plant"
 )
 
 // guess is where a figure may be at its worst: the worst vertex of one operating corner with the other tolerances moved by the sign of their
@@ -88,8 +91,11 @@ func (h *hunt) operating() ([]*tally, error) {
 		}
 		return s.vertices(p.points[unit])
 	})
-	if err != nil || len(p.other) == 0 {
-		return found[:min(len(found), len(p.points))], err
+	if err != nil {
+		return nil, err
+	}
+	if err := h.plainStages(found[:len(p.points)]); err != nil || len(p.other) == 0 {
+		return found[:len(p.points)], err
 	}
 	lists := make([][]guess, len(p.points))
 	if err := h.team.run(len(p.points), func(w *worker, unit int) error {
@@ -110,6 +116,36 @@ func (h *hunt) operating() ([]*tally, error) {
 		found[best[i].point].merge(t)
 	}
 	return found[:len(p.points)], nil
+}
+
+// plainStages visits the worst point of each figure of the power stage once more with every part nominal that changes nothing there, so that a
+// finding about it names what matters and no more.
+func (h *hunt) plainStages(found []*tally) error {
+	all := newTally()
+	for _, t := range found {
+		all.merge(t)
+	}
+	p := h.plan
+	_, err := h.run(1, func(s *search, _ int) error {
+		for f := highDuty; f < figures; f++ {
+			if all.at[f] == nil || math.IsNaN(all.worst[f]) {
+				continue
+			}
+			x := slices.Clone(all.at[f])
+			for _, axis := range p.tolerant {
+				before := x[axis]
+				x[axis] = p.nominal[axis]
+				s.worker.set(x)
+				reached := !errors.Is(s.worker.solveErr, plant.ErrUnreachable)
+				if v := f.ofPlant(&s.worker.solution, reached); !(math.Abs(v-all.worst[f]) <= 1e-12*math.Abs(v)) {
+					x[axis] = before
+				}
+			}
+			_, _ = s.visit(x)
+		}
+		return s.ctx.Err()
+	})
+	return err
 }
 
 // changes measures the point x and gives the first-order changes of the figure's badness there.

@@ -12,10 +12,10 @@ import (
 )
 
 // worst finds the corner with the highest score; a corner whose score is NaN is passed over. It returns nil when no corner
-// has a score. Of corners that are equal but for rounding the first in the analysis' order counts: nominal before operating
-// before refined.
+// has a score. Of corners that are equal but for rounding the one with the fewest parts off nominal counts, then the first in the
+// analysis' order: nominal before operating before refined.
 func (c *Case) worst(score func(*analysis.Corner) float64) (*analysis.Corner, float64) {
-	var r race
+	r := race{nominal: c.nominal().At}
 	for i := range c.Result.Corners {
 		r.enter(&c.Result.Corners[i], score(&c.Result.Corners[i]))
 	}
@@ -29,7 +29,7 @@ func (c *Case) worstStage(score func(*analysis.Corner) float64) (*analysis.Corne
 	if stages == nil {
 		stages = distinctStages(c.Result)
 	}
-	var r race
+	r := race{nominal: c.nominal().At}
 	for _, i := range stages {
 		r.enter(&c.Result.Corners[i], score(&c.Result.Corners[i]))
 	}
@@ -38,14 +38,30 @@ func (c *Case) worstStage(score func(*analysis.Corner) float64) (*analysis.Corne
 
 // race keeps the corner with the highest score so far.
 type race struct {
-	leader *analysis.Corner
-	score  float64
+	leader  *analysis.Corner
+	score   float64
+	nominal []analysis.Setting // nil: the first of equals leads
 }
 
 func (r *race) enter(corner *analysis.Corner, score float64) {
 	if r.leader == nil && !math.IsNaN(score) || score-r.score > 1e-9*math.Abs(r.score) {
 		r.leader, r.score = corner, score
+		return
 	}
+	if r.nominal != nil && math.Abs(score-r.score) <= 1e-9*math.Abs(r.score) && r.deviations(corner) < r.deviations(r.leader) {
+		r.leader = corner
+	}
+}
+
+// deviations counts the tolerances of a corner that are not nominal; of equal corners the plainer is told.
+func (r *race) deviations(corner *analysis.Corner) int {
+	n := 0
+	for i, s := range corner.At {
+		if i < len(r.nominal) && s.Value != r.nominal[i].Value && s.Path != "input-voltage" && s.Path != "load.current" {
+			n++
+		}
+	}
+	return n
 }
 
 // distinctStages lists the corners (by index) whose power stage is not that of an earlier corner.
