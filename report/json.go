@@ -31,6 +31,9 @@ func NewJSON(w io.Writer, version string) *JSON {
 func (j *JSON) File(f workspace.File) {
 	j.totals.Add(f)
 	out := fileOut{Path: clean(f.Path), Status: f.Status.String(), Policy: clean(f.Policy), Findings: []findingOut{}, Proof: proofOf(f.Proof), Outcomes: outcomesOf(f.Outcomes)}
+	if f.Result != nil {
+		out.Complete = &f.Result.Complete
+	}
 	for _, found := range f.Findings {
 		out.Findings = append(out.Findings, shape(found))
 	}
@@ -54,6 +57,7 @@ type fileOut struct {
 	Path     string       `json:"path"`
 	Status   string       `json:"status"`
 	Policy   string       `json:"policy,omitempty"`
+	Complete *bool        `json:"complete,omitempty"`
 	Findings []findingOut `json:"findings"`
 	Proof    *proofOut    `json:"proof,omitempty"`
 	Outcomes []outcomeOut `json:"outcomes,omitempty"`

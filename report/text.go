@@ -34,6 +34,7 @@ type Text struct {
 	totals   Totals
 	corner   string // that was told last
 	proofs   []string
+	partial  int      // designs of which not every extreme was visited
 	policies []string // in force for some file, each once
 }
 
@@ -47,6 +48,9 @@ func NewText(w io.Writer, o TextOptions) *Text {
 func (t *Text) File(f workspace.File) {
 	t.totals.Add(f)
 	t.proofs = append(t.proofs, proofLines(f)...)
+	if f.Result != nil && !f.Result.Complete {
+		t.partial++
+	}
 	if f.Policy != "" && !slices.Contains(t.policies, f.Policy) {
 		t.policies = append(t.policies, f.Policy)
 	}
@@ -90,6 +94,9 @@ func (t *Text) Close() error {
 		fmt.Fprintln(t.w, line)
 	}
 	if !t.o.NoSummary {
+		if t.partial > 0 {
+			fmt.Fprintf(t.w, "not complete: of %s not every extreme of every tolerance was visited\n", plural(t.partial, "design"))
+		}
 		for _, p := range t.policies {
 			fmt.Fprintln(t.w, "policy "+safe(p))
 		}
