@@ -40,7 +40,7 @@ read, parsed or validated; 3 a defect of the program itself. When several apply,
   halfplane check shelf/ --as json --to findings.json --as text`,
 		RunE: func(cmd *cobra.Command, args []string) error { return c.run(cmd, args) },
 	}
-	c.formFlags = addFormFlags(cmd)
+	c.formFlags = addFormFlags(cmd, "text", "json", "junit", "markdown", "csv")
 	c.failAt = addChoice(cmd, "fail-at", "error", "least severity that makes the exit status 1", "error", "warning", "note", "never")
 	cmd.Flags().StringSliceVar(&c.only, "only", nil, "these rules only (`RULE,...`); what keeps a file from being read is always reported")
 	cmd.Flags().StringSliceVar(&c.without, "without", nil, "all rules but these (`RULE,...`)")
@@ -122,14 +122,19 @@ func (c *checkCommand) statusOf(f workspace.File) status {
 	case f.Status == workspace.Unreadable:
 		return usage
 	}
-	gate := map[string]rules.Severity{"error": rules.Error, "warning": rules.Warning, "note": rules.Note}
-	least, any := gate[c.failAt.value]
+	least, any := c.gate()
 	for _, finding := range f.Findings {
 		if any && finding.Severity >= least {
 			return found
 		}
 	}
 	return clean
+}
+
+// gate is the least severity that fails; any is false where nothing does.
+func (c *checkCommand) gate() (least rules.Severity, any bool) {
+	least, any = map[string]rules.Severity{"error": rules.Error, "warning": rules.Warning, "note": rules.Note}[c.failAt.value]
+	return least, any
 }
 
 // findingsWriter takes findings file by file.
@@ -145,6 +150,16 @@ func (c *checkCommand) writers(outputs []output, stdout io.Writer) (writers []fi
 		switch o.form {
 		case "json":
 			writers = append(writers, report.NewJSON(s, version))
+		case "junit":
+			gate, any := c.gate()
+			if !any {
+				gate = rules.None
+			}
+			writers = append(writers, report.NewJUnit(s, gate))
+		case "markdown":
+			writers = append(writers, report.NewMarkdown(s))
+		case "csv":
+			writers = append(writers, report.NewCSV(s))
 		default:
 			writers = append(writers, report.NewText(s, report.TextOptions{
 				Color: s.held == nil && colored(c.color.value, stdout), NoSummary: c.quiet,

@@ -44,7 +44,7 @@ Exit status: 0, or 2 for wrong usage or a file that could not be read, parsed or
 		ValidArgsFunction: completeDesigns,
 		RunE:              func(cmd *cobra.Command, args []string) error { return c.run(cmd, args[0]) },
 	}
-	c.formFlags = addFormFlags(cmd)
+	c.formFlags = addFormFlags(cmd, "text", "json")
 	cmd.Flags().StringArrayVar(&c.at, "at", nil, "one point only: `PATH=VALUE,...`")
 	c.corners = addChoice(cmd, "corners", "operating", "which corners are listed: the operating corners and those of the worst figures, or all that were analysed", "operating", "all")
 	cmd.Flags().IntVar(&c.units, "yield", 0, "Monte Carlo: build `N` units at random within the tolerances, tell how many meet the margins, with quantiles and root sum square")

@@ -12,14 +12,12 @@ import (
 )
 
 // formFlags are --as and --to: the n-th --to belongs to the n-th --as.
-type formFlags struct{ as, to []string }
+type formFlags struct{ forms, as, to []string }
 
-// forms are the output forms of every command that has --as.
-var forms = []string{"text", "json"}
-
-func addFormFlags(cmd *cobra.Command) *formFlags {
-	f := &formFlags{}
-	cmd.Flags().StringArrayVar(&f.as, "as", nil, "output `FORM`: text or json; may be repeated (default text)")
+// addFormFlags declares them for a command that has these forms; the first is the default.
+func addFormFlags(cmd *cobra.Command, forms ...string) *formFlags {
+	f := &formFlags{forms: forms}
+	cmd.Flags().StringArrayVar(&f.as, "as", nil, "output `FORM`: "+either(forms)+"; may be repeated (default "+forms[0]+")")
 	cmd.Flags().StringArrayVar(&f.to, "to", nil, "write to `FILE` instead of standard output; the n-th --to belongs to the n-th --as")
 	cobra.CheckErr(cmd.RegisterFlagCompletionFunc("as", cobra.FixedCompletions(forms, cobra.ShellCompDirectiveNoFileComp)))
 	return f
@@ -41,8 +39,8 @@ func (f *formFlags) outputs() ([]output, error) {
 	}
 	var out []output
 	for i, form := range as {
-		if !slices.Contains(forms, form) {
-			return nil, fmt.Errorf("--as expects %s, not %q", either(forms), form)
+		if !slices.Contains(f.forms, form) {
+			return nil, fmt.Errorf("--as expects %s, not %q", either(f.forms), form)
 		}
 		o := output{form: form}
 		if i < len(f.to) {
