@@ -19,6 +19,7 @@ type checkCommand struct {
 	failAt        *choice
 	only, without []string
 	quiet, prove  bool
+	shard         shard
 }
 
 func newCheck() *cobra.Command {
@@ -45,6 +46,7 @@ read, parsed or validated; 3 a defect of the program itself. When several apply,
 	cmd.Flags().StringSliceVar(&c.only, "only", nil, "these rules only (`RULE,...`); what keeps a file from being read is always reported")
 	cmd.Flags().StringSliceVar(&c.without, "without", nil, "all rules but these (`RULE,...`)")
 	cmd.Flags().BoolVar(&c.quiet, "quiet", false, "findings only, no line of totals")
+	cmd.Flags().Var(&c.shard, "shard", "every N-th file, beginning with the K-th: one of N jobs that run side by side")
 	cmd.Flags().BoolVar(&c.prove, "prove", false, "certificate: prove each margin at every point of the box of input, load and tolerances; what refutes one is judged like any corner, what stays undecided is a note")
 	c.analysisFlags = addAnalysisFlags(cmd)
 	cobra.CheckErr(cmd.RegisterFlagCompletionFunc("only", completeRules))
@@ -69,7 +71,9 @@ func (c *checkCommand) run(cmd *cobra.Command, args []string) error {
 		fmt.Fprintf(cmd.ErrOrStderr(), "halfplane: %v\n", err)
 		code = usage
 	}
-	if len(items) == 0 && err == nil {
+	found := len(items)
+	items = c.shard.of(items)
+	if found == 0 && err == nil {
 		fmt.Fprintf(cmd.ErrOrStderr(), "halfplane: there is no spec file (NAME.converter.yaml) in %s\n", strings.Join(args, ", "))
 	}
 	writers, sinks := c.writers(outputs, cmd.OutOrStdout())
