@@ -91,6 +91,27 @@ type findingOut struct {
 	Formula  string       `json:"formula,omitempty"`
 	Related  []relatedOut `json:"related,omitempty"`
 	Cause    *causeOut    `json:"cause,omitempty"`
+	Mends    []mendOut    `json:"mends,omitempty"`
+	Waiver   *waiverOut   `json:"waiver,omitempty"`
+	Recorded bool         `json:"recorded,omitempty"`
+}
+
+type mendOut struct {
+	Title string    `json:"title"`
+	Edits []editOut `json:"edits"`
+	After settings  `json:"after,omitempty"`
+}
+
+type editOut struct {
+	Path    string   `json:"path,omitempty"` // where the edit is in another file than the finding
+	Pointer string   `json:"pointer"`
+	Range   rangeOut `json:"range"`
+	Text    string   `json:"text"`
+}
+
+type waiverOut struct {
+	Reason string `json:"reason"`
+	Until  string `json:"until"`
 }
 
 type rangeOut struct {
@@ -140,6 +161,25 @@ func shape(f rules.Finding) findingOut {
 	}
 	if f.Cause != nil {
 		out.Cause = &causeOut{f.Cause.Rule, f.Cause.Pointer}
+	}
+	for _, m := range f.Mends {
+		out.Mends = append(out.Mends, mendShape(f, m))
+	}
+	if f.Waiver != nil {
+		out.Waiver = &waiverOut{f.Waiver.Reason, f.Waiver.Until}
+	}
+	out.Recorded = f.Recorded
+	return out
+}
+
+func mendShape(f rules.Finding, m rules.Mend) mendOut {
+	out := mendOut{Title: m.Title, Edits: []editOut{}, After: settings(m.After)}
+	for _, e := range m.Edits {
+		path := ""
+		if e.Doc != f.Doc {
+			path = nameOf(e.Doc)
+		}
+		out.Edits = append(out.Edits, editOut{Path: path, Pointer: e.Pointer, Range: place(e.Doc, e.Start, e.End), Text: e.Text})
 	}
 	return out
 }

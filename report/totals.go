@@ -8,7 +8,8 @@ import (
 	"halfplane/workspace"
 )
 
-// Totals counts files and findings; consequences are not counted, since one cause is one finding.
+// Totals counts files and findings; consequences are not counted, since one cause is one finding. Waived findings are
+// counted as such only.
 type Totals struct {
 	Files      int `json:"files"`
 	Unreadable int `json:"unreadable"`
@@ -16,6 +17,7 @@ type Totals struct {
 	Warnings   int `json:"warning"`
 	Notes      int `json:"note"`
 	Waived     int `json:"waived"`
+	Recorded   int `json:"recorded,omitempty"` // of the errors, warnings and notes, those that a ledger has on record
 }
 
 // Add counts one file.
@@ -27,6 +29,13 @@ func (t *Totals) Add(f workspace.File) {
 	for _, found := range f.Findings {
 		if found.Cause != nil {
 			continue
+		}
+		if found.Waiver != nil {
+			t.Waived++
+			continue
+		}
+		if found.Recorded {
+			t.Recorded++
 		}
 		switch found.Severity {
 		case rules.Error:

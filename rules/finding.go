@@ -68,6 +68,37 @@ type Finding struct {
 	Cause       *Cause   // this finding is a consequence of another in the same list
 	About       string   // of not-assessed: the rule that could not be assessed
 	Reason      string   // of not-assessed: why
+	Mends       []Mend   // repairs, where they were asked for
+	Waiver      *Waiver  // the waiver in force that covers it; nil: none does
+	Recorded    bool     // a ledger has it on record, no worse than it is now
+}
+
+// Live says that a finding counts for the gate: it is neither waived nor on record.
+func (f *Finding) Live() bool { return f.Waiver == nil && !f.Recorded }
+
+// Kind tells apart findings of one rule at one place; "" where there is only one. Together with the rule, the file and the
+// pointer it names a finding however lines move and figures change.
+func (f *Finding) Kind() string { return f.About }
+
+// Waiver is what the file says about a finding that it accepts.
+type Waiver struct {
+	Reason string
+	Until  string // the last day on which it holds, YYYY-MM-DD
+}
+
+// Mend is a repair of a finding that was checked by analysing the file with it.
+type Mend struct {
+	Title string             // a verb phrase: "state 1/3"
+	Edits []Edit             // of one text, not overlapping, in order
+	After []analysis.Setting // figures of the mended design, by their keys in the JSON of figures
+}
+
+// Edit puts a text in the place of the bytes from Start to End of Doc.
+type Edit struct {
+	Doc        *schema.Document
+	Pointer    string
+	Start, End int
+	Text       string
 }
 
 // Cause names the finding that a consequence follows from.

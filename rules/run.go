@@ -7,7 +7,10 @@ import (
 )
 
 // RunOptions choose rules by name; empty Only means all of them.
-type RunOptions struct{ Only, Without []string }
+type RunOptions struct {
+	Only, Without []string
+	Today         string // the day that waivers are judged on, YYYY-MM-DD; "": none has run out
+}
 
 func (o RunOptions) chosen(name string) bool {
 	return (len(o.Only) == 0 || slices.Contains(o.Only, name)) && !slices.Contains(o.Without, name)

@@ -128,7 +128,7 @@ func (c *checkCommand) statusOf(f workspace.File) status {
 	}
 	least, any := c.gate()
 	for _, finding := range f.Findings {
-		if any && finding.Severity >= least {
+		if any && finding.Severity >= least && finding.Live() {
 			return found
 		}
 	}
