@@ -115,6 +115,9 @@ func (t *Text) finding(path string, f rules.Finding, about []string) {
 	for _, words := range f.Deciders {
 		t.line(indent, "part", words)
 	}
+	for _, m := range f.Mends {
+		t.line(indent, "mend", mendWords(m))
+	}
 	for _, r := range f.Related {
 		if r.Doc != nil && r.Doc != f.Doc {
 			p := r.Doc.Position(r.Start)

@@ -3,7 +3,8 @@ package rules
 // list is every rule, in the order of the catalogue. A rule that is not here does not exist.
 var list = []*Rule{
 	// declared
-	&specSyntax, &specShape, &quantity, &assumedNominal, &turnsRatio, &reflectedInductance, &dividerSetpoint,
+	&specSyntax, &specShape, &quantity, &assumedNominal, &plausibleSize, &turnsRatio, &reflectedInductance,
+	&statedFigureRule, &dividerSetpoint, &preferredValue, &spreadMissing, &biasDerating,
 	// operating
 	&dutyRange, &dutyLatch, &conductionMode, &inductorSaturation, &inductorRipple, &switchVoltage, &rectifierVoltage,
 	&switchCurrent, &capacitorRippleCurrent, &outputRipple,

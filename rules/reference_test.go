@@ -15,6 +15,7 @@ import (
 var planted = map[string]Severity{
 	"slope-compensation": Error, "closed-loop-stability": Error, "phase-margin": Error, "gain-margin": Error, "modulus-margin": Warning,
 	"switching-crossover": Warning, "several-crossovers": Warning, "amplifier-bandwidth": Note,
+	"spread-missing": Note, // of the sense gain
 }
 
 // warned are the warnings that healthy reference designs deserve: the damped input filter of the lamp regulator comes within

@@ -16,4 +16,5 @@ var reflectedInductance = Rule{
 	},
 	Unassessed: statedGap,
 	Decide:     func(c *Case) []Finding { return judgeStated(c, "reflected-inductance") },
+	Mend:       stateRecomputed,
 }

@@ -93,6 +93,7 @@ type Rule struct {
 	Applies  func(*Case) bool
 	Needs    []string // JSON pointers without which it cannot be assessed
 	Decide   func(*Case) []Finding
+	Mend     func(*Case, *Finding) []Mend // ways out of a finding, before they are checked; nil: none is known
 
 	Reads  Reading
 	Judges func(*analysis.Corner) bool // the corners that the rule is about; nil: all of them

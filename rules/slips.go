@@ -6,6 +6,7 @@ import (
 	"strings"
 
 	"halfplane/analysis"
+	"halfplane/analysis/network"
 	"halfplane/analysis/plant"
 )
 
@@ -25,14 +26,11 @@ const slipFit = 0.02
 func nameSlip(c *Case, corner *analysis.Corner, figure statedFigure, stated, got float64) (rule, words string) {
 	var fitting []slip
 	for _, s := range slipsOf(c, corner, figure, got) {
-		if agrees(s.values[0], got, c.threshold(statedTolerance)) {
+		if figure.agrees(s.values[0], got, c.threshold(statedTolerance)) {
 			continue // no slip: it hardly changes the figure
 		}
-		for _, value := range s.values {
-			if agrees(stated, value, slipFit) {
-				fitting = append(fitting, s)
-				break
-			}
+		if slices.ContainsFunc(s.values, func(value float64) bool { return figure.agrees(stated, value, slipFit) }) {
+			fitting = append(fitting, s)
 		}
 	}
 	if len(fitting) == 0 {
@@ -69,35 +67,98 @@ func coincide(a, b slip) bool {
 	return false
 }
 
+// workings recompute one figure with a slip put in.
+type workings struct {
+	c          *Case
+	circuit    *plant.Circuit // at nominal input and full load; not to be changed
+	network    *network.Parts // likewise
+	figure     statedFigure
+	got, ideal float64 // ideal is NaN where there is no closed form
+	mode       plant.Mode
+	duty       float64
+}
+
 // slipsOf lists what can have gone wrong in a figure.
 func slipsOf(c *Case, corner *analysis.Corner, figure statedFigure, got float64) []slip {
-	n := corner.Plant.TurnsRatio
 	circuit := c.circuit(corner.At)
 	if circuit.Modulator.Scheme == plant.PeakCurrentMode && strings.HasSuffix(figure.key, "-gain") {
 		figure.ideal = nil // the closed forms are per unit duty, the figure is per control volt
 	}
-	w := workings{circuit: circuit, figure: figure, got: got, ideal: math.NaN(), mode: corner.Plant.Mode}
+	w := workings{c: c, circuit: circuit, network: c.parts(corner.At), figure: figure, got: got, ideal: math.NaN(), mode: corner.Plant.Mode, duty: corner.Plant.Duty}
 	if figure.ideal != nil {
 		base := plant.IdealOf(circuit)
 		w.ideal = figure.ideal(&base)
 	}
+	n := corner.Plant.TurnsRatio
+	var slips []slip
 	switch figure.key {
 	case "turns-ratio":
-		return []slip{
+		slips = append(slips,
 			w.factor("turns-ratio", "the ratio inverted (primary over secondary)", 1/(n*n)),
 			w.factor("turns-ratio", "the ratio applied twice", n),
-			w.factor("turns-ratio", "the ratio left out", 1/n),
-		}
+			w.factor("turns-ratio", "the ratio left out", 1/n))
+		return append(slips, w.units()...)
 	case "effective-inductance":
-		return w.reflections(n)
-	}
-	var slips []slip
-	if figure.key == "line-gain" || figure.key == "control-gain" {
-		slips = append(slips, w.gainFactors(n)...)
+		return append(w.reflections(n), w.pieces()...)
+	case "line-gain", "control-gain":
+		slips = w.gainFactors(n)
 	}
 	slips = append(slips, w.ratioEverywhere(n)...)
 	if figure.inductive {
 		slips = append(slips, w.reflections(n)...)
 	}
-	return append(slips, w.others(c)...)
+	slips = append(slips, w.units()...)
+	slips = append(slips, w.duties()...)
+	slips = append(slips, w.pieces()...)
+	return append(slips, w.conditions()...)
+}
+
+// factor is a slip that multiplies the figure.
+func (w workings) factor(rule, words string, by float64) slip {
+	s := slip{rule: rule, words: words, values: []float64{w.got * by}}
+	if !math.IsNaN(w.ideal) {
+		s.values = append(s.values, w.ideal*by)
+	}
+	return s
+}
+
+// changed is a slip that recomputes the figure from a changed power stage; none where nothing can be computed from it.
+func (w workings) changed(rule, words string, change func(*plant.Circuit)) []slip {
+	circuit := *w.circuit
+	circuit.Banks = slices.Clone(circuit.Banks)
+	change(&circuit)
+	// Whoever made the slip went on computing in the mode that the figure is stated for.
+	circuit.Synchronous = circuit.Synchronous || w.mode == plant.Continuous
+	s := slip{rule: rule, words: words}
+	if w.figure.ideal != nil {
+		ideal := plant.IdealOf(&circuit)
+		if v := w.figure.ideal(&ideal); !math.IsNaN(v) && ideal.Duty > 0 && ideal.Duty < 1 {
+			s.values = append(s.values, v*w.got/w.ideal, v)
+		}
+	}
+	if v := w.recomputed(&circuit); !math.IsNaN(v) {
+		s.values = append(s.values, v)
+	}
+	if len(s.values) == 0 || math.IsNaN(s.values[0]) {
+		return nil
+	}
+	return []slip{s}
+}
+
+// recomputed is the figure of a changed power stage, NaN where it has none.
+func (w workings) recomputed(circuit *plant.Circuit) float64 {
+	var corner analysis.Corner
+	if w.figure.reads == Figures {
+		var err error
+		corner, err = analysis.At(&analysis.Design{Nominal: analysis.Point{Circuit: *circuit, Network: *w.network}}, nil)
+		if err != nil {
+			return math.NaN()
+		}
+	} else if plant.Solve(circuit, &corner.Plant) == nil {
+		corner.Reached = true
+	}
+	if !w.figure.reads.knows(&corner) {
+		return math.NaN()
+	}
+	return w.figure.of(&corner, circuit)
 }

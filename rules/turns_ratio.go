@@ -16,4 +16,5 @@ var turnsRatio = Rule{
 	},
 	Unassessed: statedGap,
 	Decide:     func(c *Case) []Finding { return judgeStated(c, "turns-ratio") },
+	Mend:       stateRecomputed,
 }

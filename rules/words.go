@@ -129,6 +129,8 @@ func spaced(key string) string {
 		return "LED resistor"
 	case "pull-up-resistor":
 		return "pull-up resistor"
+	case "gain-bandwidth":
+		return "gain-bandwidth"
 	case "open-loop-gain":
 		return "open-loop gain"
 	case "on-resistance":
@@ -155,8 +157,15 @@ func placeWords(pointer string) string {
 		return "list of output capacitors"
 	case owner == "output-capacitors":
 		if bank, err := strconv.Atoi(steps[1]); err == nil {
+			if len(steps) == 2 {
+				return fmt.Sprintf("output capacitor bank %d", bank+1)
+			}
 			return fmt.Sprintf("%s of output capacitor bank %d", last, bank+1)
 		}
+	case owner == "targets" && len(steps) == 2:
+		return "targeted " + last
+	case owner == "targets" && len(steps) == 3:
+		return spaced(steps[1]) + "'s " + last
 	case len(steps) > 1 && steps[len(steps)-1] == "count":
 		return "number of " + spaced(owner) + "s"
 	case len(steps) == 1 || owner == "compensator" || owner == "modulator" || owner == "stated":
@@ -243,6 +252,9 @@ func pathWords(path string) string {
 		return label
 	case "output-capacitors":
 		if bank, err := strconv.Atoi(steps[1]); err == nil {
+			if len(steps) == 2 {
+				return fmt.Sprintf("output capacitor bank %d", bank+1)
+			}
 			return fmt.Sprintf("%s of bank %d", label, bank+1)
 		}
 		return label

@@ -1,6 +1,7 @@
 package schema
 
 import (
+	"math"
 	"strconv"
 	"strings"
 )
@@ -89,6 +90,22 @@ func (f *field) quantity() (q quantityField, ok bool) {
 func (s *Spec) Quantity(pointer string) (Quantity, bool) {
 	q, ok := s.quantities[pointer]
 	return q, ok
+}
+
+// Quantities visits every quantity, in the order of the file, those that `use` and `part` brought in at their place.
+func (s *Spec) Quantities(visit func(pointer string, q Quantity)) {
+	for _, pointer := range s.order {
+		visit(pointer, s.quantities[pointer])
+	}
+}
+
+// Tolerance is the larger of the two sides of a spread that is written as a tolerance; ok is false for a range, or without
+// any spread.
+func (q Quantity) Tolerance() (ratio float64, ok bool) {
+	if !q.Spread || q.Nominal == 0 || q.Node == nil || q.Node.Get("max") != nil || q.Node.Get("min") != nil {
+		return 0, false
+	}
+	return max(q.Max-q.Nominal, q.Nominal-q.Min) / math.Abs(q.Nominal), true
 }
 
 // Node is the value at a JSON pointer of the expanded tree, nil if there is none.

@@ -19,6 +19,7 @@ type Options struct {
 	Depth    analysis.Depth
 	Jobs     int // at once, over files and corners together; 0: as many as the machine runs
 	Study    Study
+	Mends    bool // compute the repairs of findings, each checked by another analysis
 	KeepAll  bool // every point analysed is in the result, not only those that show or decide something
 }
 
@@ -77,6 +78,9 @@ func (w *Workspace) CheckDocument(ctx context.Context, doc *schema.Document, o O
 			judged := rules.Judge(c, always(o.Rules))
 			f.Findings, f.Outcomes = append(judged.Findings, rules.Unproved(c, f.Proof)...), judged.Outcomes
 			rules.Sort(f.Findings)
+			if o.Mends {
+				w.mend(ctx, c, &f, o)
+			}
 			err = o.Study.further(ctx, c, &f, o.Jobs)
 		}
 		if err != nil && ctx.Err() == nil {

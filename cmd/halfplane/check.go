@@ -19,6 +19,7 @@ type checkCommand struct {
 	failAt        *choice
 	only, without []string
 	quiet, prove  bool
+	mends         bool
 	shard         shard
 }
 
@@ -48,6 +49,7 @@ read, parsed or validated; 3 a defect of the program itself. When several apply,
 	cmd.Flags().BoolVar(&c.quiet, "quiet", false, "findings only, no line of totals")
 	cmd.Flags().Var(&c.shard, "shard", "every N-th file, beginning with the K-th: one of N jobs that run side by side")
 	cmd.Flags().BoolVar(&c.prove, "prove", false, "certificate: prove each margin at every point of the box of input, load and tolerances; what refutes one is judged like any corner, what stays undecided is a note")
+	cmd.Flags().BoolVar(&c.mends, "mends", false, "compute repairs: each is analysed over all corners before it is shown")
 	c.analysisFlags = addAnalysisFlags(cmd)
 	cobra.CheckErr(cmd.RegisterFlagCompletionFunc("only", completeRules))
 	cobra.CheckErr(cmd.RegisterFlagCompletionFunc("without", completeRules))
@@ -113,6 +115,7 @@ func (c *checkCommand) options() workspace.Options {
 		Depth: c.depthOf(),
 		Jobs:  c.jobs,
 		Study: workspace.Study{Prove: c.prove},
+		Mends: c.mends,
 
 		Policy: c.policy,
 	}
