@@ -27,6 +27,7 @@ func TestCommands(t *testing.T) {
 		UpdateScripts: *update,
 		Setup: func(e *testscript.Env) error {
 			e.Setenv("REFERENCE", reference)
+			e.Setenv("RULES", filepath.Join(filepath.Dir(reference), "rules"))
 			e.Setenv("SHELF", shelf)
 			e.Setenv("TERM", "xterm")
 			return nil
