@@ -103,6 +103,7 @@ func (s *server) checked(ctx context.Context, d *desk, snap *snapshot, depth ana
 		}
 	}()
 	return s.check(ctx, d.space, snap.document(), workspace.Options{
+		Rules: rules.RunOptions{Today: s.o.today()},
 		Depth: depth, Jobs: s.jobs(depth), Study: workspace.Study{Sensitivities: depth == analysis.Full},
 	})
 }

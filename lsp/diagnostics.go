@@ -39,6 +39,10 @@ func (s *server) diagnostic(at *places, findings []rules.Finding, i int) protoco
 		Source:   protocol.NewOptional(source),
 		Message:  protocol.String(f.Message),
 	}
+	if f.Waiver != nil {
+		out.Severity = protocol.DiagnosticSeverityHint
+		out.Message = protocol.String(fmt.Sprintf("waived until %s (%s): %s", f.Waiver.Until, f.Waiver.Reason, f.Message))
+	}
 	if page := s.settings.page(f.Rule); page != "" && s.can.codeLinks {
 		out.CodeDescription = protocol.CodeDescription{Href: uri.URI(page)}
 	}

@@ -23,7 +23,16 @@ type Options struct {
 	Root      string        // workspace folder of every file; "": each file's own
 	Debounce  time.Duration // before the quick check after a change; 0: none
 	Pause     time.Duration // without a change before the full check; 0: DefaultPause
+	Today     func() string // the day that waivers are judged on, YYYY-MM-DD; nil: the local date
 	RulePages string        // address to which "#RULE" is added; "": the catalogue page beside the program, if there is one
+}
+
+// today is the day that waivers are judged on; a server that runs for weeks asks again.
+func (o Options) today() string {
+	if o.Today != nil {
+		return o.Today()
+	}
+	return time.Now().Format(time.DateOnly)
 }
 
 // DefaultPause is how long typing must pause before the full check. Fifty words a minute are five keys a second with the

@@ -28,12 +28,18 @@ func (c *CSV) File(f workspace.File) {
 		if found.Doc != nil {
 			at = found.Doc.Position(found.Start)
 		}
-		cause := ""
+		cause, until, recorded := "", "", ""
+		if found.Waiver != nil {
+			until = found.Waiver.Until
+		}
+		if found.Recorded {
+			recorded = "yes"
+		}
 		if found.Cause != nil {
 			cause = found.Cause.Rule
 		}
 		c.line(clean(f.Path), strconv.Itoa(at.Line), strconv.Itoa(at.Column), found.Severity.String(), found.Rule, found.Message,
-			value(found.Measured), value(found.Limit), value(found.Nominal), unit(found), found.CornerWords, cause)
+			value(found.Measured), value(found.Limit), value(found.Nominal), unit(found), found.CornerWords, cause, until, recorded)
 	}
 }
 
@@ -47,7 +53,7 @@ func (c *CSV) Close() error {
 func (c *CSV) head() {
 	if !c.begun {
 		c.begun = true
-		c.line("path", "line", "column", "severity", "rule", "message", "measured", "limit", "nominal", "unit", "corner", "cause")
+		c.line("path", "line", "column", "severity", "rule", "message", "measured", "limit", "nominal", "unit", "corner", "cause", "waived-until", "recorded")
 	}
 }
 

@@ -82,7 +82,7 @@ func TestCSVHoldsOneLineForEachFindingAndNoFormula(t *testing.T) {
 	require.NoError(t, err)
 	require.Len(t, lines, 5)
 	assert.Equal(t, "path", lines[0][0])
-	assert.Equal(t, []string{"shelf/a.converter.yaml", "3", "24", "error", "closed-loop-stability", "the closed loop oscillates", "4900", "2620", "", "Hz", "9.00 V in, 1.50 A", ""}, lines[2])
+	assert.Equal(t, []string{"shelf/a.converter.yaml", "3", "24", "error", "closed-loop-stability", "the closed loop oscillates", "4900", "2620", "", "Hz", "9.00 V in, 1.50 A", "", "", ""}, lines[2])
 	assert.Equal(t, "closed-loop-stability", lines[3][11], "the cause of a consequence")
 	assert.Equal(t, "'=SUM(A1) is no mapping", lines[4][5])
 	assert.NotContains(t, lines[1][5], "\x1b")

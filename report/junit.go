@@ -13,7 +13,7 @@ import (
 
 // JUnit writes the XML that continuous integration reads as test results: a suite for each file, a case for each rule that applies. A finding at
 // or above the gate is a failure, one below it output; a rule that could not be assessed is skipped; a file that cannot be
-// read is an error.
+// read is an error. A finding that is waived or on record is skipped, with the reason.
 type JUnit struct {
 	w    io.Writer
 	gate rules.Severity
@@ -108,6 +108,11 @@ func (j *JUnit) judged(s *junitSuite, f workspace.File, rule string, list []rule
 	c := junitCase{Class: s.Name, Name: rule}
 	var output []string
 	for _, found := range list {
+		if why := accepted(found); why != "" && f.Status != workspace.Unreadable {
+			c.Skipped = &junitText{Message: safe(why)}
+			output = append(output, safeLines(whole(f, found)))
+			continue
+		}
 		text := junitText{Message: safe(found.Message), Type: found.Severity.String(), Text: safeLines(whole(f, found))}
 		switch {
 		case f.Status == workspace.Unreadable:
@@ -119,6 +124,9 @@ func (j *JUnit) judged(s *junitSuite, f workspace.File, rule string, list []rule
 		}
 	}
 	c.Output = strings.Join(output, "\n")
+	if len(c.Failure)+len(c.Error) > 0 {
+		c.Skipped = nil
+	}
 	return c
 }
 

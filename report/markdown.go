@@ -17,6 +17,7 @@ type Markdown struct {
 	w      *bufio.Writer
 	totals Totals
 	files  []string
+	waived []string
 }
 
 // NewMarkdown starts a report; Close ends it.
@@ -25,10 +26,15 @@ func NewMarkdown(w io.Writer) *Markdown { return &Markdown{w: bufio.NewWriter(w)
 // File adds one file.
 func (m *Markdown) File(f workspace.File) {
 	m.totals.Add(f)
-	under := consequences(f.Findings)
+	live := unrecorded(f.Findings)
+	under := consequences(live)
 	var b strings.Builder
-	for i, found := range f.Findings {
-		if causeOf(f.Findings, i) >= 0 {
+	for i, found := range live {
+		if found.Waiver != nil {
+			m.waived = append(m.waived, fmt.Sprintf("- `%s` in %s until %s: %s. Reason: %s\n", found.Rule, cell(clean(f.Path)), cell(found.Waiver.Until), cell(found.Message), cell(found.Waiver.Reason)))
+			continue
+		}
+		if causeOf(live, i) >= 0 {
 			continue
 		}
 		at := schema.Position{Line: 1, Column: 1}
@@ -54,6 +60,9 @@ func (m *Markdown) Close() error {
 	fmt.Fprintf(m.w, "## halfplane: %s\n", m.totals.Words())
 	for _, f := range m.files {
 		m.w.WriteString(f)
+	}
+	if len(m.waived) > 0 {
+		fmt.Fprintf(m.w, "\n<details><summary>%s waived on record</summary>\n\n%s\n</details>\n", plural(len(m.waived), "finding"), strings.Join(m.waived, ""))
 	}
 	return m.w.Flush()
 }

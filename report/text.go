@@ -43,7 +43,7 @@ func NewText(w io.Writer, o TextOptions) *Text {
 	return &Text{w: bufio.NewWriter(w), o: o}
 }
 
-// File adds one file's findings. A consequence is set in under the finding that it follows from; notes on rules that the same
+// File adds one file's findings, but for those that are on record in a ledger, which are only counted. A consequence is set in under the finding that it follows from; notes on rules that the same
 // reason keeps from being assessed at the same place are one block.
 func (t *Text) File(f workspace.File) {
 	t.totals.Add(f)
@@ -54,16 +54,17 @@ func (t *Text) File(f workspace.File) {
 	if f.Policy != "" && !slices.Contains(t.policies, f.Policy) {
 		t.policies = append(t.policies, f.Policy)
 	}
-	under := consequences(f.Findings)
-	told := make([]bool, len(f.Findings))
-	for i, found := range f.Findings {
-		if causeOf(f.Findings, i) >= 0 || told[i] {
+	live := unrecorded(f.Findings)
+	under := consequences(live)
+	told := make([]bool, len(live))
+	for i, found := range live {
+		if causeOf(live, i) >= 0 || told[i] {
 			continue
 		}
-		t.finding(f.Path, found, fold(f.Findings, i, told))
+		t.finding(f.Path, found, fold(live, i, told))
 		for _, j := range under[i] {
 			if !told[j] {
-				t.consequence(f.Path, f.Findings[j], fold(f.Findings, j, told))
+				t.consequence(f.Path, live[j], fold(live, j, told))
 			}
 		}
 	}
@@ -80,7 +81,7 @@ func fold(all []rules.Finding, i int, told []bool) []string {
 	about := []string{first.About}
 	for j := i + 1; j < len(all); j++ {
 		f := all[j]
-		if f.About != "" && f.Reason == first.Reason && f.Pointer == first.Pointer && f.Severity == first.Severity && causeOf(all, j) == causeOf(all, i) {
+		if f.About != "" && f.Reason == first.Reason && f.Pointer == first.Pointer && f.Severity == first.Severity && (f.Waiver == nil) == (first.Waiver == nil) && causeOf(all, j) == causeOf(all, i) {
 			about = append(about, f.About)
 			told[j] = true
 		}
@@ -110,6 +111,9 @@ func (t *Text) finding(path string, f rules.Finding, about []string) {
 	t.head(indent, path, f, folded(f, about))
 	t.line(indent, "rule", f.Rule)
 	t.list(indent, about)
+	if f.Waiver != nil {
+		t.line(indent, "waiver", fmt.Sprintf("until %s: %s", f.Waiver.Until, f.Waiver.Reason))
+	}
 	t.line(indent, "worst", f.CornerWords)
 	t.corner = f.CornerWords
 	for _, words := range f.Deciders {
@@ -167,9 +171,11 @@ func (t *Text) head(indent, path string, f rules.Finding, message string) {
 	if f.Doc != nil {
 		at = f.Doc.Position(f.Start)
 	}
-	fmt.Fprintf(t.w, "%s%s: %s: %s\n", indent,
-		t.paint("1", fmt.Sprintf("%s:%d:%d", safe(path), at.Line, at.Column)),
-		t.paint(severityColor(f.Severity), f.Severity.String()), safe(message))
+	severity := t.paint(severityColor(f.Severity), f.Severity.String())
+	if f.Waiver != nil { // to what reads the severity it is a note
+		severity = t.paint(severityColor(rules.Note), "note") + ": waived " + f.Severity.String()
+	}
+	fmt.Fprintf(t.w, "%s%s: %s: %s\n", indent, t.paint("1", fmt.Sprintf("%s:%d:%d", safe(path), at.Line, at.Column)), severity, safe(message))
 }
 
 // line writes one of the indented lines under a finding; an empty one is left out.

@@ -59,6 +59,9 @@ func (t Totals) Words() string {
 			found = append(found, plural(c.n, c.word))
 		}
 	}
+	if t.Waived > 0 {
+		found = append(found, fmt.Sprintf("%d waived", t.Waived))
+	}
 	if len(found) == 0 {
 		found = []string{"no findings"}
 	}
@@ -66,7 +69,11 @@ func (t Totals) Words() string {
 	if t.Unreadable > 0 {
 		head += fmt.Sprintf(" (%d not analysed)", t.Unreadable)
 	}
-	return head + ": " + strings.Join(found, ", ")
+	words := head + ": " + strings.Join(found, ", ")
+	if t.Recorded > 0 {
+		words += fmt.Sprintf("; %d of them on record in the ledger, %d new or worse", t.Recorded, t.Errors+t.Warnings+t.Notes-t.Recorded)
+	}
+	return words
 }
 
 // plural is "1 file", "2 files".

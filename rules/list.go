@@ -15,7 +15,7 @@ var list = []*Rule{
 	&closedLoopStability, &phaseMargin, &gainMargin, &modulusMargin, &conditionalStability, &severalCrossovers,
 	&crossoverRange, &lowFrequencyGain, &comparatorRipple, &amplifierBandwidth, &samplingDelay, &optocouplerPole,
 	// keeping
-	&notAssessed, &internal,
+	&waiverExpired, &waiverUnused, &waiverUnknown, &notAssessed, &internal,
 }
 
 // All is every rule, in the order of the catalogue.

@@ -17,6 +17,9 @@ import (
 	"halfplane/schema"
 )
 
+// today is the day on which the files' waivers are judged.
+const today = "2030-06-30"
+
 const (
 	shelf     = "../testdata/rules"
 	reference = "../testdata/reference"
@@ -51,7 +54,7 @@ func checkText(t testing.TB, path string, text []byte, settings Settings) ([]Fin
 		require.NotEmpty(t, problems)
 		return FromProblems(problems), nil
 	}
-	return Run(c, RunOptions{}), c
+	return Run(c, RunOptions{Today: today}), c
 }
 
 // mark is one expectation: a rule, the exact text that its finding covers, and the line on which that text starts.

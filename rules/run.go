@@ -49,12 +49,14 @@ func Judge(c *Case, o RunOptions) Judgement {
 		}
 		j.Outcomes = append(j.Outcomes, out)
 	}
+	tieCauses(c, j.Findings)
+	waive(c, j.Findings, o.Today)
+	j.Findings = append(j.Findings, keep(c, j, o)...)
 	for i := range j.Outcomes { // the rules of the runner itself
 		if out := &j.Outcomes[i]; out.Rule.Decide == nil && broken(j.Findings, out.Rule) != nil {
 			out.Status = Broken
 		}
 	}
-	tieCauses(c, j.Findings)
 	nameDeciders(c, j.Findings)
 	Sort(j.Findings)
 	return j

@@ -76,7 +76,7 @@ func (w *Workspace) CheckDocument(ctx context.Context, doc *schema.Document, o O
 		if err = o.Study.prove(ctx, c, &f, o.Jobs); err == nil {
 			f.Spec, f.Result = c.Spec, c.Result
 			judged := rules.Judge(c, always(o.Rules))
-			f.Findings, f.Outcomes = append(judged.Findings, rules.Unproved(c, f.Proof)...), judged.Outcomes
+			f.Findings, f.Outcomes = append(judged.Findings, rules.Unproved(c, f.Proof, o.Rules.Today)...), judged.Outcomes
 			rules.Sort(f.Findings)
 			if o.Mends {
 				w.mend(ctx, c, &f, o)

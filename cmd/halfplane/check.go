@@ -111,7 +111,7 @@ func (c *checkCommand) checkFlags() error {
 
 func (c *checkCommand) options() workspace.Options {
 	return workspace.Options{
-		Rules: rules.RunOptions{Only: c.only, Without: c.without},
+		Rules: rules.RunOptions{Only: c.only, Without: c.without, Today: c.today.String()},
 		Depth: c.depthOf(),
 		Jobs:  c.jobs,
 		Study: workspace.Study{Prove: c.prove},

@@ -7,6 +7,7 @@ import (
 
 	"halfplane/analysis"
 	"halfplane/report"
+	"halfplane/rules"
 	"halfplane/workspace"
 )
 
@@ -72,7 +73,7 @@ func (c *figuresCommand) run(cmd *cobra.Command, path string) error {
 	if len(items) != 1 || items[0].Path != path {
 		return fmt.Errorf("%s is a folder: figures takes one design", path)
 	}
-	o := workspace.Options{Policy: c.policy, Depth: c.depthOf(), Jobs: c.jobs, KeepAll: c.corners.value == "all"}
+	o := workspace.Options{Rules: rules.RunOptions{Today: c.today.String()}, Policy: c.policy, Depth: c.depthOf(), Jobs: c.jobs, KeepAll: c.corners.value == "all"}
 	if len(c.at) > 0 {
 		o.Depth = analysis.Quick // only the assigned point is shown
 	} else {

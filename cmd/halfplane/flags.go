@@ -56,6 +56,7 @@ type analysisFlags struct {
 	root  string
 
 	policy string
+	today  day
 }
 
 func addAnalysisFlags(cmd *cobra.Command) *analysisFlags {
@@ -65,6 +66,7 @@ func addAnalysisFlags(cmd *cobra.Command) *analysisFlags {
 	}
 	cmd.Flags().IntVar(&f.jobs, "jobs", 0, "analyses at once; 0: as many as the machine runs")
 	cmd.Flags().StringVar(&f.policy, "policy", "", "`FILE` with severities and thresholds for all designs (default: each design's nearest halfplane.yaml at or above it)")
+	f.today = addDay(cmd)
 	cmd.Flags().StringVar(&f.root, "root", "", "`FOLDER` that references between files may not leave (default: the git work tree, else the outermost folder with a halfplane.yaml, else the folder named)")
 	return f
 }

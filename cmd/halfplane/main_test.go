@@ -33,6 +33,7 @@ func TestCommands(t *testing.T) {
 			return nil
 		},
 		Cmds: map[string]func(*testscript.TestScript, bool, []string){
+			"append": appendTo,
 			"exits":  exits,
 			"large":  large,
 			"socket": socket,
@@ -63,4 +64,13 @@ func large(ts *testscript.TestScript, _ bool, args []string) {
 	ts.Check(err)
 	ts.Check(f.Truncate(50 << 20))
 	ts.Check(f.Close())
+}
+
+// appendTo puts one file's text behind another's: append FILE TEXT.
+func appendTo(ts *testscript.TestScript, _ bool, args []string) {
+	if len(args) != 2 {
+		ts.Fatalf("usage: append FILE TEXT")
+	}
+	text := ts.ReadFile(args[0]) + ts.ReadFile(args[1])
+	ts.Check(os.WriteFile(ts.MkAbs(args[0]), []byte(text), 0o666))
 }
