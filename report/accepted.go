@@ -1,6 +1,11 @@
 package report
 
-import "halfplane/rules"
+import (
+	"math"
+
+	"halfplane/rules"
+	"halfplane/schema"
+)
 
 // unrecorded is the findings without those that a ledger has on record.
 func unrecorded(all []rules.Finding) []rules.Finding {
@@ -22,4 +27,16 @@ func accepted(f rules.Finding) string {
 		return "on record in the ledger"
 	}
 	return ""
+}
+
+// recordWords says what is on record of a finding that got worse.
+func recordWords(r *rules.Record) string {
+	words := "worse than on record: " + r.Severity.String()
+	if !math.IsNaN(r.Measured) {
+		words += ", " + schema.Format(r.Measured, r.Unit)
+		if !math.IsNaN(r.Limit) {
+			words += " against " + schema.Format(r.Limit, r.Unit)
+		}
+	}
+	return words
 }

@@ -94,6 +94,13 @@ type findingOut struct {
 	Mends    []mendOut    `json:"mends,omitempty"`
 	Waiver   *waiverOut   `json:"waiver,omitempty"`
 	Recorded bool         `json:"recorded,omitempty"`
+	Record   *recordOut   `json:"record,omitempty"`
+}
+
+type recordOut struct {
+	Severity string     `json:"severity"`
+	Measured *numberOut `json:"measured,omitempty"`
+	Limit    *numberOut `json:"limit,omitempty"`
 }
 
 type mendOut struct {
@@ -169,6 +176,9 @@ func shape(f rules.Finding) findingOut {
 		out.Waiver = &waiverOut{f.Waiver.Reason, f.Waiver.Until}
 	}
 	out.Recorded = f.Recorded
+	if r := f.Record; r != nil {
+		out.Record = &recordOut{r.Severity.String(), number(&rules.Number{Value: r.Measured, Unit: r.Unit}), number(&rules.Number{Value: r.Limit, Unit: r.Unit})}
+	}
 	return out
 }
 

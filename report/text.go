@@ -111,6 +111,9 @@ func (t *Text) finding(path string, f rules.Finding, about []string) {
 	t.head(indent, path, f, folded(f, about))
 	t.line(indent, "rule", f.Rule)
 	t.list(indent, about)
+	if f.Record != nil {
+		t.line(indent, "record", recordWords(f.Record))
+	}
 	if f.Waiver != nil {
 		t.line(indent, "waiver", fmt.Sprintf("until %s: %s", f.Waiver.Until, f.Waiver.Reason))
 	}

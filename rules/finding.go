@@ -70,7 +70,8 @@ type Finding struct {
 	Reason      string   // of not-assessed: why
 	Mends       []Mend   // repairs, where they were asked for
 	Waiver      *Waiver  // the waiver in force that covers it; nil: none does
-	Recorded    bool     // a ledger has it on record, no worse than it is now
+	Record      *Record  // what a ledger has on record of it; nil: nothing
+	Recorded    bool     // it is on record and no worse than that
 }
 
 // Live says that a finding counts for the gate: it is neither waived nor on record.

@@ -19,6 +19,7 @@ type checkCommand struct {
 	failAt        *choice
 	only, without []string
 	quiet, prove  bool
+	ledger        ledger
 	mends         bool
 	shard         shard
 }
@@ -39,7 +40,9 @@ read, parsed or validated; 3 a defect of the program itself. When several apply,
 		Example: `  halfplane check
   halfplane check shelf/ --fail-at warning
   halfplane check shelf/profiler.converter.yaml --as json
-  halfplane check shelf/ --as json --to findings.json --as text`,
+  halfplane check shelf/ --as json --to findings.json --as text
+  halfplane check shelf/ --ledger known.ledger --ledger-renew=all    # put on record what is found today
+  halfplane check shelf/ --ledger known.ledger                       # and count only what is new or worse`,
 		RunE: func(cmd *cobra.Command, args []string) error { return c.run(cmd, args) },
 	}
 	c.formFlags = addFormFlags(cmd, "text", "json", "junit", "markdown", "csv")
@@ -50,6 +53,7 @@ read, parsed or validated; 3 a defect of the program itself. When several apply,
 	cmd.Flags().Var(&c.shard, "shard", "every N-th file, beginning with the K-th: one of N jobs that run side by side")
 	cmd.Flags().BoolVar(&c.prove, "prove", false, "certificate: prove each margin at every point of the box of input, load and tolerances; what refutes one is judged like any corner, what stays undecided is a note")
 	cmd.Flags().BoolVar(&c.mends, "mends", false, "compute repairs: each is analysed over all corners before it is shown")
+	c.ledger.declare(cmd)
 	c.analysisFlags = addAnalysisFlags(cmd)
 	cobra.CheckErr(cmd.RegisterFlagCompletionFunc("only", completeRules))
 	cobra.CheckErr(cmd.RegisterFlagCompletionFunc("without", completeRules))
@@ -62,6 +66,9 @@ func (c *checkCommand) run(cmd *cobra.Command, args []string) error {
 		return err
 	}
 	if err := c.checkFlags(); err != nil {
+		return err
+	}
+	if err := c.ledger.open(); err != nil {
 		return err
 	}
 	if len(args) == 0 {
@@ -80,6 +87,7 @@ func (c *checkCommand) run(cmd *cobra.Command, args []string) error {
 	}
 	writers, sinks := c.writers(outputs, cmd.OutOrStdout())
 	workspace.Each(cmd.Context(), items, c.options(), func(f workspace.File) {
+		c.ledger.match(f)
 		code = max(code, c.statusOf(f))
 		for _, w := range writers {
 			w.File(f)
@@ -92,6 +100,9 @@ func (c *checkCommand) run(cmd *cobra.Command, args []string) error {
 		if err := sinks[i].close(); err != nil {
 			return err
 		}
+	}
+	if err := c.ledger.close(cmd.ErrOrStderr()); err != nil {
+		return err
 	}
 	if code != clean {
 		return exit{code}
