@@ -1,7 +1,9 @@
 package report
 
 import (
+	"bytes"
 	"encoding/json"
+	"errors"
 	"io"
 	"math"
 	"path/filepath"
@@ -231,6 +233,30 @@ func (s settings) MarshalJSON() ([]byte, error) {
 		o = append(o, member{at.Path, figure(at.Value)})
 	}
 	return o.MarshalJSON()
+}
+
+// UnmarshalJSON reads an object in its order; null is a figure that does not exist.
+func (s *settings) UnmarshalJSON(text []byte) error {
+	d := json.NewDecoder(bytes.NewReader(text))
+	if open, err := d.Token(); err != nil || open != json.Delim('{') {
+		return errors.Join(errors.New("expected an object of figures"), err)
+	}
+	for d.More() {
+		key, err := d.Token()
+		if err != nil {
+			return err
+		}
+		var value *float64
+		if err := d.Decode(&value); err != nil {
+			return err
+		}
+		at := analysis.Setting{Path: key.(string), Value: math.NaN()}
+		if value != nil {
+			at.Value = *value
+		}
+		*s = append(*s, at)
+	}
+	return nil
 }
 
 // object is a JSON object whose members keep their order.

@@ -33,7 +33,9 @@ func (w *Workspace) CheckFile(ctx context.Context, path string, o Options) (f Fi
 	}
 	text, err := readText(absolute(path))
 	if err != nil {
-		return unreadable(path, err)
+		f = unreadable(path, err)
+		f.Root = w.root
+		return f
 	}
 	return w.CheckDocument(ctx, schema.Read(filepath.ToSlash(path), text, 0), o)
 }
@@ -53,7 +55,7 @@ func unreadable(path string, err error) File {
 // CheckDocument validates, analyses and judges a text that is at hand. Compensator, parts and policy files are validated
 // on their own. Whatever fails inside the program becomes a finding of the rule `internal` and never a panic.
 func (w *Workspace) CheckDocument(ctx context.Context, doc *schema.Document, o Options) (f File) {
-	f = File{Path: filepath.ToSlash(doc.Name), Document: doc, Status: Checked}
+	f = File{Path: filepath.ToSlash(doc.Name), Root: w.root, Document: doc, Status: Checked}
 	defer isolate(&f, f.Path, doc)
 	settings := o.Settings
 	if doc.Kind == schema.Design {

@@ -28,6 +28,7 @@ func (s Status) String() string {
 // File is the outcome for one file.
 type File struct {
 	Path     string // as it is shown: as given, else relative to the working folder, with '/'
+	Root     string // absolute path of the workspace's folder
 	Document *schema.Document
 	Status   Status
 	Spec     *schema.Spec     // nil when unreadable

@@ -45,7 +45,7 @@ read, parsed or validated; 3 a defect of the program itself. When several apply,
   halfplane check shelf/ --ledger known.ledger                       # and count only what is new or worse`,
 		RunE: func(cmd *cobra.Command, args []string) error { return c.run(cmd, args) },
 	}
-	c.formFlags = addFormFlags(cmd, "text", "json", "junit", "markdown", "csv")
+	c.formFlags = addFormFlags(cmd, "text", "json", "sarif", "junit", "markdown", "csv")
 	c.failAt = addChoice(cmd, "fail-at", "error", "least severity that makes the exit status 1", "error", "warning", "note", "never")
 	cmd.Flags().StringSliceVar(&c.only, "only", nil, "these rules only (`RULE,...`); what keeps a file from being read is always reported")
 	cmd.Flags().StringSliceVar(&c.without, "without", nil, "all rules but these (`RULE,...`)")
@@ -168,6 +168,8 @@ func (c *checkCommand) writers(outputs []output, stdout io.Writer) (writers []fi
 		switch o.form {
 		case "json":
 			writers = append(writers, report.NewJSON(s, version))
+		case "sarif":
+			writers = append(writers, report.NewSARIF(s, version))
 		case "junit":
 			gate, any := c.gate()
 			if !any {
