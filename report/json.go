@@ -32,7 +32,7 @@ func NewJSON(w io.Writer, version string) *JSON {
 // File adds one file's findings.
 func (j *JSON) File(f workspace.File) {
 	j.totals.Add(f)
-	out := fileOut{Path: clean(f.Path), Status: f.Status.String(), Policy: clean(f.Policy), Findings: []findingOut{}, Proof: proofOf(f.Proof), Outcomes: outcomesOf(f.Outcomes)}
+	out := fileOut{Path: clean(f.Path), SHA256: hashOf(f), Status: f.Status.String(), Policy: clean(f.Policy), Findings: []findingOut{}, Proof: proofOf(f.Proof), Outcomes: outcomesOf(f.Outcomes)}
 	if f.Result != nil {
 		out.Complete = &f.Result.Complete
 	}
@@ -57,6 +57,7 @@ type findingsDocument struct {
 
 type fileOut struct {
 	Path     string       `json:"path"`
+	SHA256   string       `json:"sha-256,omitempty"`
 	Status   string       `json:"status"`
 	Policy   string       `json:"policy,omitempty"`
 	Complete *bool        `json:"complete,omitempty"`
@@ -93,6 +94,10 @@ type findingOut struct {
 	Formula  string       `json:"formula,omitempty"`
 	Related  []relatedOut `json:"related,omitempty"`
 	Cause    *causeOut    `json:"cause,omitempty"`
+	Words    string       `json:"corner-words,omitempty"`
+	Deciders []string     `json:"deciders,omitempty"`
+	About    string       `json:"about,omitempty"`
+	Reason   string       `json:"reason,omitempty"`
 	Mends    []mendOut    `json:"mends,omitempty"`
 	Waiver   *waiverOut   `json:"waiver,omitempty"`
 	Recorded bool         `json:"recorded,omitempty"`
@@ -162,6 +167,10 @@ func shape(f rules.Finding) findingOut {
 		Limit:    number(f.Limit),
 		Nominal:  number(f.Nominal),
 		Formula:  f.Formula,
+		Words:    f.CornerWords,
+		Deciders: f.Deciders,
+		About:    f.About,
+		Reason:   f.Reason,
 	}
 	for _, r := range f.Related {
 		out.Related = append(out.Related, relatedOut{

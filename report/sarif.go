@@ -2,8 +2,6 @@ package report
 
 import (
 	"bufio"
-	"crypto/sha256"
-	"encoding/hex"
 	"encoding/json"
 	"fmt"
 	"io"
@@ -98,10 +96,9 @@ func (s *SARIF) artifact(f workspace.File, doc *schema.Document, target bool) {
 	a := sarifArtifact{Location: sarifAddress{URI: uri, Base: sourceRoot}}
 	if target {
 		a.Roles = []string{"analysisTarget"}
-	}
-	if len(doc.Text) > 0 {
-		sum := sha256.Sum256(doc.Text)
-		a.Hashes = map[string]string{"sha-256": hex.EncodeToString(sum[:])}
+		if sum := hashOf(f); sum != "" {
+			a.Hashes = map[string]string{"sha-256": sum}
+		}
 	}
 	s.artifacts = append(s.artifacts, a)
 }

@@ -9,6 +9,8 @@ import (
 	"strings"
 )
 
+var errNoGit = errors.New("the program git is needed for this, and it is not on the search path")
+
 // git runs the git program in a folder and gives what it writes. It reads the repository and changes nothing in it: no
 // hook, pager, prompt or optional lock. What git itself has to say about a failure is the error.
 func git(ctx context.Context, folder string, args ...string) ([]byte, error) {
@@ -18,7 +20,7 @@ func git(ctx context.Context, folder string, args ...string) ([]byte, error) {
 	err := cmd.Run()
 	switch {
 	case errors.Is(err, exec.ErrNotFound):
-		return nil, errors.New("the program git is needed for this, and it is not on the search path")
+		return nil, errNoGit
 	case err != nil && said.Len() > 0:
 		return nil, fmt.Errorf("git: %s", strings.TrimPrefix(strings.TrimSpace(said.String()), "fatal: "))
 	case err != nil:

@@ -22,6 +22,8 @@ type checkCommand struct {
 	ledger        ledger
 	mends         bool
 	shard         shard
+	since         string
+	merge         []string
 }
 
 func newCheck() *cobra.Command {
@@ -42,6 +44,8 @@ read, parsed or validated; 3 a defect of the program itself. When several apply,
   halfplane check shelf/profiler.converter.yaml --as json
   halfplane check shelf/ --as json --to findings.json --as text
   halfplane check shelf/ --ledger known.ledger --ledger-renew=all    # put on record what is found today
+  halfplane check --since main... --as markdown                      # what a branch has changed
+  halfplane check --merge first.json second.json --as text           # what two jobs have found
   halfplane check shelf/ --ledger known.ledger                       # and count only what is new or worse`,
 		RunE: func(cmd *cobra.Command, args []string) error { return c.run(cmd, args) },
 	}
@@ -53,6 +57,8 @@ read, parsed or validated; 3 a defect of the program itself. When several apply,
 	cmd.Flags().Var(&c.shard, "shard", "every N-th file, beginning with the K-th: one of N jobs that run side by side")
 	cmd.Flags().BoolVar(&c.prove, "prove", false, "certificate: prove each margin at every point of the box of input, load and tolerances; what refutes one is judged like any corner, what stays undecided is a note")
 	cmd.Flags().BoolVar(&c.mends, "mends", false, "compute repairs: each is analysed over all corners before it is shown")
+	cmd.Flags().StringVar(&c.since, "since", "", "only files that differ from the git revision `REV`, and the designs that use them; REV... counts from where the branches parted")
+	cmd.Flags().StringArrayVar(&c.merge, "merge", nil, "join results instead of checking: `FILE`s that --as json wrote, for example by the jobs of --shard")
 	c.ledger.declare(cmd)
 	c.analysisFlags = addAnalysisFlags(cmd)
 	cobra.CheckErr(cmd.RegisterFlagCompletionFunc("only", completeRules))
@@ -68,25 +74,19 @@ func (c *checkCommand) run(cmd *cobra.Command, args []string) error {
 	if err := c.checkFlags(); err != nil {
 		return err
 	}
+	if err := c.mergeFlags(cmd); err != nil {
+		return err
+	}
 	if err := c.ledger.open(); err != nil {
 		return err
 	}
-	if len(args) == 0 {
-		args = []string{"."}
-	}
 	code := clean
-	items, err := workspace.Find(args, c.root)
+	each, err := c.source(cmd, args, &code)
 	if err != nil {
-		fmt.Fprintf(cmd.ErrOrStderr(), "halfplane: %v\n", err)
-		code = usage
-	}
-	found := len(items)
-	items = c.shard.of(items)
-	if found == 0 && err == nil {
-		fmt.Fprintf(cmd.ErrOrStderr(), "halfplane: there is no spec file (NAME.converter.yaml) in %s\n", strings.Join(args, ", "))
+		return err
 	}
 	writers, sinks := c.writers(outputs, cmd.OutOrStdout())
-	workspace.Each(cmd.Context(), items, c.options(), func(f workspace.File) {
+	each(func(f workspace.File) {
 		c.ledger.match(f)
 		code = max(code, c.statusOf(f))
 		for _, w := range writers {
@@ -110,6 +110,39 @@ func (c *checkCommand) run(cmd *cobra.Command, args []string) error {
 	return nil
 }
 
+// source is where the files come from: results that are joined, else the designs at the paths. What could not be searched is
+// said, and the rest is still checked.
+func (c *checkCommand) source(cmd *cobra.Command, args []string, code *status) (each func(func(workspace.File)), err error) {
+	if len(c.merge) > 0 {
+		files, err := joined(append(c.merge, args...))
+		return func(done func(workspace.File)) {
+			for _, f := range files {
+				done(f)
+			}
+		}, err
+	}
+	if len(args) == 0 {
+		args = []string{"."}
+	}
+	items, err := workspace.Find(args, c.root)
+	if err != nil {
+		fmt.Fprintf(cmd.ErrOrStderr(), "halfplane: %v\n", err)
+		*code = usage
+	} else if len(items) == 0 {
+		fmt.Fprintf(cmd.ErrOrStderr(), "halfplane: there is no spec file (NAME.converter.yaml) in %s\n", strings.Join(args, ", "))
+	}
+	if c.since != "" && len(items) > 0 {
+		if items, err = workspace.Since(cmd.Context(), items, c.since, c.policy); err != nil {
+			return nil, fmt.Errorf("--since: %w", err)
+		}
+		if len(items) == 0 {
+			fmt.Fprintf(cmd.ErrOrStderr(), "halfplane: no design here, and nothing that one uses, differs from %s\n", c.since)
+		}
+	}
+	items = c.shard.of(items)
+	return func(done func(workspace.File)) { workspace.Each(cmd.Context(), items, c.options(), done) }, nil
+}
+
 func (c *checkCommand) checkFlags() error {
 	if err := c.analysisFlags.check(); err != nil {
 		return err
@@ -118,6 +151,19 @@ func (c *checkCommand) checkFlags() error {
 		return err
 	}
 	return ruleNames("without", c.without)
+}
+
+// mergeFlags refuses what can only be said to a check, where results of checks are joined.
+func (c *checkCommand) mergeFlags(cmd *cobra.Command) error {
+	if len(c.merge) == 0 {
+		return nil
+	}
+	for _, name := range []string{"since", "shard", "policy", "prove", "mends", "only", "without", "depth", "jobs", "root", "today"} {
+		if cmd.Flags().Changed(name) {
+			return fmt.Errorf("--%s belongs to the checks whose results --merge joins", name)
+		}
+	}
+	return nil
 }
 
 func (c *checkCommand) options() workspace.Options {
