@@ -31,8 +31,8 @@ type Resolver interface {
 }
 
 // newSpec reads every quantity of a tree that has no problem.
-func newSpec(g *grower, root *Node, f *field) *Spec {
-	s := &Spec{Document: g.doc, Root: root, quantities: map[string]Quantity{}, sources: g.sources}
+func newSpec(doc *Document, sources map[*Node]source, root *Node, f *field) *Spec {
+	s := &Spec{Document: doc, Root: root, quantities: map[string]Quantity{}, sources: sources}
 	s.collect(root, f, "")
 	return s
 }

@@ -36,7 +36,7 @@ func Validate(doc *Document, r Resolver) (*Spec, []Problem) {
 	if len(problems) > 0 || doc.Kind != Design {
 		return nil, problems
 	}
-	return newSpec(g, root, f), nil
+	return newSpec(g.doc, g.sources, root, f), nil
 }
 
 // torn tells a document that does not parse: of its tree only what stands before and behind the mistakes is known. A

@@ -20,6 +20,7 @@ type Options struct {
 	Jobs     int // at once, over files and corners together; 0: as many as the machine runs
 	Study    Study
 	Mends    bool // compute the repairs of findings, each checked by another analysis
+	Bounds   bool // File.Bounds
 	KeepAll  bool // every point analysed is in the result, not only those that show or decide something
 }
 
@@ -31,7 +32,7 @@ func (w *Workspace) CheckFile(ctx context.Context, path string, o Options) (f Fi
 		f.Path = filepath.ToSlash(path)
 		return f
 	}
-	text, err := readText(absolute(path))
+	text, err := w.text(absolute(path))
 	if err != nil {
 		f = unreadable(path, err)
 		f.Root = w.root
@@ -80,6 +81,9 @@ func (w *Workspace) CheckDocument(ctx context.Context, doc *schema.Document, o O
 			judged := rules.Judge(c, always(o.Rules))
 			f.Findings, f.Outcomes = append(judged.Findings, rules.Unproved(c, f.Proof, o.Rules.Today)...), judged.Outcomes
 			rules.Sort(f.Findings)
+			if o.Bounds {
+				f.Bounds, f.Stable = c.Bounds(), c.Stable()
+			}
 			if o.Mends {
 				w.mend(ctx, c, &f, o)
 			}

@@ -66,7 +66,7 @@ func (w *Workspace) specFiles() []string {
 // references gives the absolute paths that a file refers to. They are remembered until the file changes.
 func (w *Workspace) references(abs string) []string {
 	now := linked{doc: w.overlay(abs)}
-	if now.doc == nil {
+	if now.doc == nil && w.past == nil {
 		info, err := os.Stat(abs)
 		if err != nil {
 			return nil
@@ -88,7 +88,7 @@ func (w *Workspace) references(abs string) []string {
 
 func (w *Workspace) readReferences(abs string, doc *schema.Document) []string {
 	if doc == nil {
-		text, err := readText(abs)
+		text, err := w.text(abs)
 		// Most designs of a large shelf share nothing; they need no parsing to know that.
 		if err != nil || (!bytes.Contains(text, []byte("use")) && !bytes.Contains(text, []byte("libraries"))) {
 			return nil

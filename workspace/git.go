@@ -14,9 +14,14 @@ var errNoGit = errors.New("the program git is needed for this, and it is not on 
 // git runs the git program in a folder and gives what it writes. It reads the repository and changes nothing in it: no
 // hook, pager, prompt or optional lock. What git itself has to say about a failure is the error.
 func git(ctx context.Context, folder string, args ...string) ([]byte, error) {
+	return gitReading(ctx, folder, nil, args...)
+}
+
+// gitReading is git with something on its standard input.
+func gitReading(ctx context.Context, folder string, input []byte, args ...string) ([]byte, error) {
 	cmd := exec.CommandContext(ctx, "git", append([]string{"--no-pager", "--no-optional-locks", "-C", folder}, args...)...)
 	var out, said bytes.Buffer
-	cmd.Stdout, cmd.Stderr = &out, &said
+	cmd.Stdin, cmd.Stdout, cmd.Stderr = bytes.NewReader(input), &out, &said
 	err := cmd.Run()
 	switch {
 	case errors.Is(err, exec.ErrNotFound):

@@ -68,6 +68,15 @@ func (p policy) unusable(design *schema.Document) schema.Problem {
 	return out
 }
 
+// isFile says whether there is a file at an absolute path.
+func (w *Workspace) isFile(abs string) bool {
+	if w.past != nil {
+		return w.past.has(abs)
+	}
+	info, err := os.Stat(abs)
+	return err == nil && info.Mode().IsRegular()
+}
+
 // nearestPolicy is the absolute path of the nearest policy at or above a folder, "" where there is none up to the root.
 func (w *Workspace) nearestPolicy(folder string) string {
 	for within(w.root, folder) || within(w.real, folder) {
@@ -75,7 +84,7 @@ func (w *Workspace) nearestPolicy(folder string) string {
 		if w.overlay(at) != nil {
 			return at
 		}
-		if info, err := os.Stat(at); err == nil && info.Mode().IsRegular() {
+		if w.isFile(at) {
 			return at
 		}
 		above := filepath.Dir(folder)

@@ -56,6 +56,14 @@ func readText(path string) ([]byte, error) {
 	return text, nil
 }
 
+// text reads one file of the workspace: from the disk, or from the revision that the workspace shows.
+func (w *Workspace) text(abs string) ([]byte, error) {
+	if w.past != nil {
+		return w.past.text(abs)
+	}
+	return readText(abs)
+}
+
 func tooLarge(size int64) error {
 	return fmt.Errorf("the file holds %.1f MB, expected a spec file of at most %d MB", float64(size)/(1<<20), MaxSize>>20)
 }
@@ -99,6 +107,13 @@ func inWords(mode fs.FileMode) string {
 func (w *Workspace) shared(abs string) (*schema.Document, error) {
 	if doc := w.overlay(abs); doc != nil {
 		return doc, nil
+	}
+	if w.past != nil {
+		text, err := w.past.text(abs)
+		if err != nil {
+			return nil, err
+		}
+		return schema.Read(shown(abs), text, 0), nil
 	}
 	info, err := os.Stat(abs)
 	if err != nil {

@@ -38,6 +38,9 @@ type File struct {
 	Outcomes []rules.Outcome  // what became of each rule that was chosen; nil when unreadable
 	Policy   string           // the policy file in force, as it is shown; "": none
 
+	Bounds []rules.Bound // the worst figures with what is asked of them, where the options asked for them
+	Stable bool          // likewise: at every corner
+
 	Sensitivities *analysis.Sensitivities // these three where the options asked for them
 	Yield         *analysis.Yield
 	Proof         *analysis.Proof
@@ -55,6 +58,8 @@ type Workspace struct {
 	overlays map[string]*schema.Document // by absolute path
 	disk     map[string]kept             // documents of shared files, by absolute path
 	links    map[string]linked           // what each file refers to, by absolute path
+
+	past *past // the files of a revision instead of the disk's; nil: the disk
 
 	// prepare is rules.Prepare; a test puts a failing one in its place.
 	prepare func(context.Context, *schema.Document, schema.Resolver, rules.Settings, analysis.Options) (*rules.Case, []schema.Problem, error)

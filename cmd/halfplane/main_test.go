@@ -4,6 +4,7 @@ import (
 	"flag"
 	"os"
 	"path/filepath"
+	"strings"
 	"testing"
 
 	"github.com/rogpeppe/go-internal/testscript"
@@ -33,10 +34,11 @@ func TestCommands(t *testing.T) {
 			return nil
 		},
 		Cmds: map[string]func(*testscript.TestScript, bool, []string){
-			"append": appendTo,
-			"exits":  exits,
-			"large":  large,
-			"socket": socket,
+			"append":  appendTo,
+			"exits":   exits,
+			"large":   large,
+			"replace": replace,
+			"socket":  socket,
 		},
 	})
 }
@@ -73,4 +75,16 @@ func appendTo(ts *testscript.TestScript, _ bool, args []string) {
 	}
 	text := ts.ReadFile(args[0]) + ts.ReadFile(args[1])
 	ts.Check(os.WriteFile(ts.MkAbs(args[0]), []byte(text), 0o666))
+}
+
+// replace puts one text in the place of another in a file: replace FILE OLD NEW.
+func replace(ts *testscript.TestScript, _ bool, args []string) {
+	if len(args) != 3 {
+		ts.Fatalf("usage: replace FILE OLD NEW")
+	}
+	text := ts.ReadFile(args[0])
+	if !strings.Contains(text, args[1]) {
+		ts.Fatalf("there is no %q in %s", args[1], args[0])
+	}
+	ts.Check(os.WriteFile(ts.MkAbs(args[0]), []byte(strings.ReplaceAll(text, args[1], args[2])), 0o666))
 }

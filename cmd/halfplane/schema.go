@@ -25,6 +25,7 @@ func schemaKinds() []schemaKind {
 		{"policy", "halfplane.yaml: a project's severities and thresholds", spec(schema.Policy)},
 		{"findings", "output of 'halfplane check --as json'", report.FindingsSchema},
 		{"figures", "output of 'halfplane figures --as json'", report.FiguresSchema},
+		{"comparison", "output of 'halfplane compare --as json'", report.ComparisonSchema},
 	}
 }
 
