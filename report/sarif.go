@@ -8,45 +8,41 @@ import (
 	"strings"
 
 	"halfplane/rules"
-	"halfplane/schema"
 	"halfplane/workspace"
 )
 
 // SARIF writes findings in the Static Analysis Results Interchange Format, version 2.1.0 (OASIS standard, 2020, with errata 01 of 2023).
-// Results are written as they come; nothing in the document depends on the machine, the working folder or the day.
+// Results are written as they come; nothing in the document depends on the machine, the working folder or the day. Severities that a
+// policy sets are the level of each result: policies differ from folder to folder, so none of them overrides a rule for the whole run.
 type SARIF struct {
-	w           *bufio.Writer
-	index       map[string]int // of the rules
-	results     int
-	artifacts   []sarifArtifact
-	listed      map[string]bool // artifacts, by address
-	failures    []sarifNotification
-	err         error
-	versionText string
+	w         *bufio.Writer
+	err       error
+	index     map[string]int // of the rules
+	results   int
+	seen      map[string]int // how often each identity has occurred
+	addresses sarifAddresses
+	artifacts sarifArtifacts
+	told      []sarifNotification
 }
 
-// sarifSchema is the address of the format's schema, as OASIS publishes it.
-const sarifSchema = "https://docs.oasis-open.org/sarif/sarif/v2.1.0/errata01/os/schemas/sarif-schema-2.1.0.json"
-
-// sourceRoot names the folder that all addresses are relative to: the git work tree, else the workspace.
-const sourceRoot = "SRCROOT"
-
-// fingerprint names the way in which results are told apart; another way gets another number.
-const fingerprint = "halfplane/v1"
+// SARIFSchema is the address of the format's schema, as OASIS publishes it.
+const SARIFSchema = "https://docs.oasis-open.org/sarif/sarif/v2.1.0/errata01/os/schemas/sarif-schema-2.1.0.json"
 
 // NewSARIF starts a report of the given program version; Close ends it.
 func NewSARIF(w io.Writer, version string) *SARIF {
-	s := &SARIF{w: bufio.NewWriter(w), index: map[string]int{}, listed: map[string]bool{}, versionText: version}
-	var all []sarifRule
+	s := &SARIF{w: bufio.NewWriter(w), index: map[string]int{}, seen: map[string]int{}, artifacts: sarifArtifacts{at: map[sarifAddress]int{}}}
+	driver := sarifDriver{Name: Program, Version: version}
+	if semantic(version) {
+		driver.Semantic = version
+	}
 	for i, r := range rules.All() {
 		s.index[r.Name] = i
-		all = append(all, sarifRuleOf(r))
+		driver.Rules = append(driver.Rules, sarifRuleOf(r))
 	}
-	driver := map[string]any{"name": Program, "version": version, "rules": all}
-	fmt.Fprintf(s.w, "{\n  \"$schema\": %q,\n  \"version\": \"2.1.0\",\n  \"runs\": [{\n", sarifSchema)
-	s.member("tool", map[string]any{"driver": driver})
+	fmt.Fprintf(s.w, "{\n  \"$schema\": %q,\n  \"version\": \"2.1.0\",\n  \"runs\": [{\n", SARIFSchema)
+	s.member("tool", sarifTool{driver})
 	s.member("columnKind", "unicodeCodePoints")
-	s.member("originalUriBaseIds", map[string]any{sourceRoot: map[string]any{"description": sarifText{"The root of the work tree; else the folder that was checked."}}})
+	s.member("defaultEncoding", "utf-8")
 	fmt.Fprint(s.w, "    \"results\": [")
 	return s
 }
@@ -71,46 +67,29 @@ func (s *SARIF) value(value any, indent string) {
 
 // File adds one file's findings.
 func (s *SARIF) File(f workspace.File) {
-	s.artifact(f, f.Document, true)
-	seen := map[string]int{}
+	s.checked(f)
 	for _, found := range f.Findings {
 		if s.results > 0 {
 			s.w.WriteByte(',')
 		}
 		s.results++
 		s.w.WriteString("\n      ")
-		s.value(s.result(f, found, seen), "      ")
-		if found.Rule == "internal" {
-			s.failures = append(s.failures, sarifNotification{Level: "error", Message: sarifText{found.Message}, Locations: []sarifLocation{s.location(f, found.Doc, found.Start, found.End)}})
-		}
+		s.value(s.result(f, found), "      ")
 	}
-}
-
-// artifact lists a file once; the ones that were checked say so and carry their hash.
-func (s *SARIF) artifact(f workspace.File, doc *schema.Document, target bool) {
-	uri := addressOf(f, nameOf(doc))
-	if doc == nil || s.listed[uri] {
-		return
-	}
-	s.listed[uri] = true
-	a := sarifArtifact{Location: sarifAddress{URI: uri, Base: sourceRoot}}
-	if target {
-		a.Roles = []string{"analysisTarget"}
-		if sum := hashOf(f); sum != "" {
-			a.Hashes = map[string]string{"sha-256": sum}
-		}
-	}
-	s.artifacts = append(s.artifacts, a)
+	s.tellOf(f)
 }
 
 // Close writes the rest and gives the first error.
 func (s *SARIF) Close() error {
 	fmt.Fprint(s.w, "\n    ],\n")
-	if len(s.artifacts) > 0 {
-		s.member("artifacts", s.artifacts)
+	if bases := s.addresses.bases(); len(bases) > 0 {
+		s.member("originalUriBaseIds", bases)
+	}
+	if len(s.artifacts.list) > 0 {
+		s.member("artifacts", s.artifacts.list)
 	}
 	fmt.Fprint(s.w, "    \"invocations\": ")
-	s.value([]sarifInvocation{{len(s.failures) == 0, s.failures}}, "    ")
+	s.value([]sarifInvocation{s.invocation()}, "    ")
 	fmt.Fprint(s.w, "\n  }]\n}\n")
 	if s.err != nil {
 		return s.err

@@ -3,8 +3,6 @@ package report
 import (
 	"crypto/sha256"
 	"encoding/hex"
-	"net/url"
-	"path/filepath"
 	"strconv"
 	"strings"
 
@@ -13,28 +11,24 @@ import (
 	"halfplane/workspace"
 )
 
-// result is one finding. seen counts findings of one identity in the file.
-func (s *SARIF) result(f workspace.File, found rules.Finding, seen map[string]int) sarifResult {
+// fingerprint names the way in which results are told apart; another way gets another number.
+const fingerprint = "halfplane/v1"
+
+// result is one finding.
+func (s *SARIF) result(f workspace.File, found rules.Finding) sarifResult {
 	place := s.location(f, found.Doc, found.Start, found.End)
-	if found.Pointer != "" {
-		place.Logical = []sarifLogical{{FullyQualifiedName: found.Pointer}}
-	}
+	place.Logical = logical(found.Pointer)
 	out := sarifResult{
-		RuleID: found.Rule, RuleIndex: s.index[found.Rule], Level: found.Severity.String(), Message: sarifText{sentences(found)},
+		RuleID: found.Rule, RuleIndex: s.index[found.Rule], Kind: "fail", Level: found.Severity.String(), Message: sarifText{sentences(found)},
 		Locations:    []sarifLocation{place},
-		Fingerprints: map[string]string{fingerprint: s.identity(f, found, seen)},
+		Fingerprints: map[string]string{fingerprint: s.identity(f, found)},
 		Suppressions: suppressions(found),
-		Properties: sarifProperties{
-			Corner: settings(found.Corner), Measured: number(found.Measured), Limit: number(found.Limit), Nominal: number(found.Nominal), Formula: found.Formula,
-		},
-	}
-	if found.Cause != nil {
-		out.Properties.Cause = &causeOut{found.Cause.Rule, found.Cause.Pointer}
+		Properties:   propertiesOf(found),
 	}
 	for i, r := range found.Related {
-		s.artifact(f, r.Doc, false)
 		at := s.location(f, r.Doc, r.Start, r.End)
-		at.ID, at.Message = i+1, &sarifText{r.Message}
+		s.artifacts.add(at.Physical.Address, "")
+		at.ID, at.Logical, at.Message = i+1, logical(r.Pointer), &sarifText{escapedMessage(safe(r.Message))}
 		out.Related = append(out.Related, at)
 	}
 	for _, m := range found.Mends {
@@ -43,77 +37,105 @@ func (s *SARIF) result(f workspace.File, found rules.Finding, seen map[string]in
 	return out
 }
 
-// sentences is the finding as prose: what is wrong, where it is worst, what decides it.
-func sentences(f rules.Finding) string {
-	text := capital(safe(f.Message)) + "."
-	if f.CornerWords != "" {
-		text += " Worst at " + safe(f.CornerWords) + "."
-	}
-	for _, words := range f.Deciders {
-		text += " " + capital(safe(words)) + "."
-	}
-	return text
+// identity is the same for the same finding however lines move and figures change, wherever the program runs. Findings that
+// nothing else tells apart are numbered.
+func (s *SARIF) identity(f workspace.File, found rules.Finding) string {
+	key := strings.Join([]string{found.Rule, s.addresses.of(f.Root, f.Path).URI, found.Pointer, found.Kind()}, "\x00")
+	s.seen[key]++
+	sum := sha256.Sum256([]byte(key + "\x00" + strconv.Itoa(s.seen[key])))
+	return hex.EncodeToString(sum[:16])
 }
 
-// identity is the same for the same finding however lines move and figures change, wherever the program runs.
-func (s *SARIF) identity(f workspace.File, found rules.Finding, seen map[string]int) string {
-	key := strings.Join([]string{found.Rule, addressOf(f, f.Path), found.Pointer, found.Kind()}, "\x00")
-	seen[key]++
-	sum := sha256.Sum256([]byte(key + "\x00" + strconv.Itoa(seen[key])))
-	return hex.EncodeToString(sum[:16])
+// sentences is the finding as prose: what is wrong, where it is worst, what decides it, what it follows from.
+func sentences(f rules.Finding) string {
+	words := []string{f.Message}
+	if f.CornerWords != "" {
+		words = append(words, "worst at "+f.CornerWords)
+	}
+	words = append(words, f.Deciders...)
+	if f.Cause != nil {
+		words = append(words, "follows from "+f.Cause.Rule)
+	}
+	if f.Record != nil && !f.Recorded {
+		words = append(words, recordWords(f.Record))
+	}
+	for i := range words {
+		words[i] = sentence(words[i])
+	}
+	return strings.Join(words, " ")
+}
+
+// sentence is a text with a capital and a full stop, as a message.
+func sentence(text string) string { return escapedMessage(capital(safe(text))) + "." }
+
+// escapedMessage keeps a text from being more than text: braces would be places to put arguments (3.11.5), and a bracket before
+// a parenthesis a link (3.11.6).
+func escapedMessage(text string) string {
+	return strings.NewReplacer("{", "{{", "}", "}}", "](", `\](`).Replace(text)
 }
 
 // suppressions says who accepted a finding: the file itself, or the ledger beside it. An empty list says that nobody did.
 func suppressions(f rules.Finding) []sarifSuppression {
 	switch {
 	case f.Waiver != nil:
-		return []sarifSuppression{{"inSource", "accepted", f.Waiver.Reason + " (until " + f.Waiver.Until + ")"}}
+		return []sarifSuppression{{"inSource", "accepted", safe(f.Waiver.Reason) + " (until " + safe(f.Waiver.Until) + ")"}}
 	case f.Recorded:
 		return []sarifSuppression{{"external", "accepted", "on record in the ledger"}}
 	}
 	return []sarifSuppression{}
 }
 
+// propertiesOf is the finding's numbers and ties, as in the JSON form.
+func propertiesOf(f rules.Finding) sarifProperties {
+	one := shape(f)
+	return sarifProperties{
+		Corner: one.Corner, Measured: one.Measured, Limit: one.Limit, Nominal: one.Nominal, Formula: one.Formula,
+		About: one.About, Cause: one.Cause, Record: one.Record,
+	}
+}
+
+// fix is a repair: what it comes to, and the edits of each file.
 func (s *SARIF) fix(f workspace.File, m rules.Mend) sarifFix {
-	fix := sarifFix{Description: sarifText{m.Title}}
+	fix := sarifFix{Description: sarifText{escapedMessage(safe(mendWords(m)))}}
+	if len(m.After) > 0 {
+		fix.Properties = &sarifFixBag{settings(m.After)}
+	}
 	at := map[*schema.Document]int{}
 	for _, e := range m.Edits {
 		i, known := at[e.Doc]
 		if !known {
 			i = len(fix.Changes)
 			at[e.Doc] = i
-			fix.Changes = append(fix.Changes, sarifChange{Location: sarifAddress{addressOf(f, nameOf(e.Doc)), sourceRoot}})
+			fix.Changes = append(fix.Changes, sarifChange{Location: s.location(f, e.Doc, 0, 0).Physical.Address})
 		}
-		fix.Changes[i].Replacements = append(fix.Changes[i].Replacements, sarifReplacement{regionOf(e.Doc, e.Start, e.End), sarifText{e.Text}})
+		fix.Changes[i].Replacements = append(fix.Changes[i].Replacements, sarifReplacement{*regionOf(e.Doc, e.Start, e.End), sarifText{e.Text}})
 	}
 	return fix
 }
 
+// location is a range in a text; without one it is the start of the file that was checked.
 func (s *SARIF) location(f workspace.File, doc *schema.Document, start, end int) sarifLocation {
 	name := nameOf(doc)
 	if name == "" {
 		name = f.Path
 	}
-	return sarifLocation{Physical: sarifPhysical{sarifAddress{addressOf(f, name), sourceRoot}, regionOf(doc, start, end)}}
+	return sarifLocation{Physical: sarifPhysical{s.addresses.of(f.Root, name), regionOf(doc, start, end)}}
 }
 
-func regionOf(doc *schema.Document, start, end int) sarifRegion {
+func regionOf(doc *schema.Document, start, end int) *sarifRegion {
 	at := place(doc, start, end)
-	return sarifRegion{at.Start.Line, at.Start.Column, at.End.Line, at.End.Column}
+	return &sarifRegion{at.Start.Line, at.Start.Column, at.End.Line, at.End.Column}
 }
 
-// addressOf is a file's path relative to the workspace's root, as a URI reference (RFC 3986). A path is as it was given: it
-// may be relative to the working folder.
-func addressOf(f workspace.File, name string) string {
-	path := filepath.FromSlash(name)
-	if abs, err := filepath.Abs(path); err == nil && f.Root != "" {
-		if rel, err := filepath.Rel(f.Root, abs); err == nil {
-			path = rel
-		}
+// logical is the place inside the data: the JSON pointer, and the key that it ends in. An item of a list has no key.
+func logical(pointer string) []sarifLogical {
+	if pointer == "" {
+		return nil
 	}
-	parts := strings.Split(filepath.ToSlash(path), "/")
-	for i, p := range parts {
-		parts[i] = strings.ReplaceAll(url.PathEscape(p), ":", "%3A") // a colon in the first part would look like a scheme
+	out := sarifLogical{FullyQualifiedName: pointer}
+	key := strings.NewReplacer("~1", "/", "~0", "~").Replace(pointer[strings.LastIndexByte(pointer, '/')+1:])
+	if _, err := strconv.Atoi(key); err != nil {
+		out.Name, out.Kind = key, "property"
 	}
-	return strings.Join(parts, "/")
+	return []sarifLogical{out}
 }

@@ -35,6 +35,19 @@ func within(root, path string) bool {
 	return err == nil && rel != ".." && !strings.HasPrefix(rel, ".."+string(filepath.Separator))
 }
 
+// Below is a file's path relative to a folder, with '/' between its parts; ok is false where the file lies elsewhere.
+func Below(folder, name string) (path string, ok bool) {
+	root, abs := absolute(folder), absolute(name)
+	if !within(root, abs) {
+		root, abs = follow(root), filepath.Join(follow(filepath.Dir(abs)), filepath.Base(abs))
+	}
+	if folder == "" || !within(root, abs) {
+		return "", false
+	}
+	rel, err := filepath.Rel(root, abs)
+	return filepath.ToSlash(rel), err == nil
+}
+
 // shown is an absolute path as a person reads it: relative to the working folder where it lies below it.
 func shown(abs string) string {
 	if here, err := filepath.Abs("."); err == nil && within(here, abs) {

@@ -24,6 +24,7 @@ type checkCommand struct {
 	shard         shard
 	since         string
 	merge         []string
+	missed        error // what could not be searched
 }
 
 func newCheck() *cobra.Command {
@@ -44,6 +45,7 @@ read, parsed or validated; 3 a defect of the program itself. When several apply,
   halfplane check shelf/profiler.converter.yaml --as json
   halfplane check shelf/ --as json --to findings.json --as text
   halfplane check shelf/ --ledger known.ledger --ledger-renew=all    # put on record what is found today
+  halfplane check shelf/ --as sarif --to findings.sarif              # for a code-scanning page or a viewer
   halfplane check --since main... --as markdown                      # what a branch has changed
   halfplane check --merge first.json second.json --as text           # what two jobs have found
   halfplane check shelf/ --ledger known.ledger                       # and count only what is new or worse`,
@@ -127,7 +129,7 @@ func (c *checkCommand) source(cmd *cobra.Command, args []string, code *status) (
 	items, err := workspace.Find(args, c.root)
 	if err != nil {
 		fmt.Fprintf(cmd.ErrOrStderr(), "halfplane: %v\n", err)
-		*code = usage
+		*code, c.missed = usage, err
 	} else if len(items) == 0 {
 		fmt.Fprintf(cmd.ErrOrStderr(), "halfplane: there is no spec file (NAME.converter.yaml) in %s\n", strings.Join(args, ", "))
 	}
@@ -215,7 +217,9 @@ func (c *checkCommand) writers(outputs []output, stdout io.Writer) (writers []fi
 		case "json":
 			writers = append(writers, report.NewJSON(s, version))
 		case "sarif":
-			writers = append(writers, report.NewSARIF(s, version))
+			w := report.NewSARIF(s, version)
+			w.Failed(c.missed)
+			writers = append(writers, w)
 		case "junit":
 			gate, any := c.gate()
 			if !any {

@@ -37,7 +37,7 @@ func newSchema() *cobra.Command {
 	return &cobra.Command{
 		Use:   "schema [KIND]",
 		Short: "The JSON Schema of a kind of spec file or of an output form",
-		Long:  "schema prints a JSON Schema (draft 2020-12); without a kind it lists the kinds.",
+		Long:  "schema prints a JSON Schema (draft 2020-12); without a kind it lists the kinds. That of SARIF is published by OASIS:\n" + report.SARIFSchema + ".",
 		Example: `  halfplane schema
   halfplane schema design > converter.schema.json`,
 		Args:              cobra.MaximumNArgs(1),
