@@ -50,6 +50,8 @@ func (s *server) prepared(method string, raw json.RawMessage) (answer, error) {
 	switch method {
 	case protocol.MethodTextDocumentHover:
 		return s.hover(raw)
+	case protocol.MethodTextDocumentCompletion:
+		return s.completion(raw)
 	}
 	return nil, jsonrpc2.Errorf(jsonrpc2.MethodNotFound, "%s is not served", method)
 }

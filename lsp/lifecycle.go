@@ -97,9 +97,10 @@ func (s *server) capabilities() *protocol.InitializeResult {
 	yes, incremental := true, protocol.TextDocumentSyncKindIncremental
 	return &protocol.InitializeResult{
 		Capabilities: protocol.ServerCapabilities{
-			PositionEncoding: protocol.PositionEncodingKind(s.columns.String()),
-			TextDocumentSync: &protocol.TextDocumentSyncOptions{OpenClose: &yes, Change: &incremental},
-			HoverProvider:    protocol.Boolean(true),
+			PositionEncoding:   protocol.PositionEncodingKind(s.columns.String()),
+			TextDocumentSync:   &protocol.TextDocumentSyncOptions{OpenClose: &yes, Change: &incremental},
+			HoverProvider:      protocol.Boolean(true),
+			CompletionProvider: &protocol.CompletionOptions{TriggerCharacters: []string{" ", "\"", "{"}},
 			Workspace: &protocol.WorkspaceOptions{WorkspaceFolders: &protocol.WorkspaceFoldersServerCapabilities{
 				Supported:           &yes,
 				ChangeNotifications: protocol.Boolean(true),
