@@ -16,6 +16,8 @@ require (
 	pgregory.net/rapid v1.3.0
 )
 
+require github.com/aymanbagabas/go-udiff v0.4.2
+
 require (
 	github.com/go-json-experiment/json v0.0.0-20260623181947-01eb4420fa68 // indirect
 	github.com/inconshreveable/mousetrap v1.1.0 // indirect

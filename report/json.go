@@ -99,6 +99,7 @@ type findingOut struct {
 	About    string       `json:"about,omitempty"`
 	Reason   string       `json:"reason,omitempty"`
 	Mends    []mendOut    `json:"mends,omitempty"`
+	Unmended string       `json:"unmended,omitempty"`
 	Waiver   *waiverOut   `json:"waiver,omitempty"`
 	Recorded bool         `json:"recorded,omitempty"`
 	Record   *recordOut   `json:"record,omitempty"`
@@ -171,6 +172,7 @@ func shape(f rules.Finding) findingOut {
 		Deciders: f.Deciders,
 		About:    f.About,
 		Reason:   f.Reason,
+		Unmended: f.Unmended,
 	}
 	for _, r := range f.Related {
 		out.Related = append(out.Related, relatedOut{

@@ -158,7 +158,7 @@ func (f findingOut) finding(path string, docs map[string]*schema.Document) (rule
 	out := rules.Finding{
 		Rule: f.Rule, Severity: severity, Message: f.Message, Formula: f.Formula, Pointer: f.Pointer, Doc: docs[path],
 		Corner: f.Corner, CornerWords: f.Words, Nominal: f.Nominal.number(), Measured: f.Measured.number(), Limit: f.Limit.number(),
-		Deciders: f.Deciders, About: f.About, Reason: f.Reason, Recorded: f.Recorded,
+		Deciders: f.Deciders, About: f.About, Reason: f.Reason, Recorded: f.Recorded, Unmended: f.Unmended,
 	}
 	if rules.Find(f.Rule) == nil {
 		return out, fmt.Errorf("there is no rule %q in this version of the program", f.Rule)

@@ -122,6 +122,7 @@ func (t *Text) finding(path string, f rules.Finding, about []string) {
 	for _, words := range f.Deciders {
 		t.line(indent, "part", words)
 	}
+	t.line(indent, "mend", f.Unmended)
 	for _, m := range f.Mends {
 		t.line(indent, "mend", mendWords(m))
 	}

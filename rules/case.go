@@ -56,7 +56,7 @@ func Prepare(ctx context.Context, doc *schema.Document, r schema.Resolver, setti
 		return nil, []schema.Problem{beyondModels(spec)}, nil
 	}
 	return &Case{
-		Spec: spec, Design: design, Result: result, Settings: settings, stages: distinctStages(result),
-		pointed: &pointed{map[*analysis.Setting]*plant.Circuit{}, map[*analysis.Setting]*network.Parts{}},
+		Spec: spec, Design: design, Result: result, Settings: settings, every: list, stages: distinctStages(result),
+		pointed: &pointed{map[*analysis.Setting]*plant.Circuit{}, map[*analysis.Setting]*network.Parts{}, map[int][]Mend{}},
 	}, nil, nil
 }

@@ -44,6 +44,8 @@ var closedLoopStability = Rule{
 		c.relate(&f, "sets the inner loop", "/modulator/slope-compensation", "/modulator/current-sense-gain")
 		return []Finding{f}
 	},
+	Mend:   otherValues,
+	WhyNot: noValues,
 }
 
 // poles words a count of right-half-plane poles.

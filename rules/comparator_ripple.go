@@ -70,6 +70,8 @@ var comparatorRipple = Rule{
 		c.relate(&f, "decides the ripple at the comparator", "/output-capacitor/esr", "/output-capacitors", "/compensator/lead-capacitor", "/compensator/rolloff-capacitor", "/modulator/ramp-amplitude")
 		return []Finding{f}
 	},
+	Mend:   otherValues,
+	WhyNot: noValues,
 }
 
 // rippleScore ranks corners whose averaged loop is stable: the lower the margin with ripple the higher, unstable ones first. At the very

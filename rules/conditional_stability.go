@@ -45,4 +45,6 @@ var conditionalStability = Rule{
 		}
 		return []Finding{f}
 	},
+	Mend:   otherValues,
+	WhyNot: noValues,
 }

@@ -143,6 +143,7 @@ func (c *Case) valueAt(corner *analysis.Corner, path string) float64 {
 type pointed struct {
 	circuits map[*analysis.Setting]*plant.Circuit
 	networks map[*analysis.Setting]*network.Parts
+	mends    map[int][]Mend // of the loop, by attempt
 }
 
 // circuit is the power stage and modulator at a corner; it is not to be changed.

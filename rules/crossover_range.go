@@ -52,6 +52,8 @@ var crossoverRange = Rule{
 		c.relate(&f, "sets the gain at crossover", gainPart(c))
 		return []Finding{f}
 	},
+	Mend:   otherValues,
+	WhyNot: noValues,
 }
 
 // crossoverLimits are the ends of the target range (Hz). A plain number is an upper limit, as it is for a duty limit.

@@ -69,6 +69,7 @@ type Finding struct {
 	About       string   // of not-assessed: the rule that could not be assessed
 	Reason      string   // of not-assessed: why
 	Mends       []Mend   // repairs, where they were asked for
+	Unmended    string   // why there is none, where they were asked for and something is known of that
 	Waiver      *Waiver  // the waiver in force that covers it; nil: none does
 	Record      *Record  // what a ledger has on record of it; nil: nothing
 	Recorded    bool     // it is on record and no worse than that

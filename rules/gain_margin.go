@@ -30,4 +30,6 @@ var gainMargin = Rule{
 			return fmt.Sprintf("−20·log10 |T| at %s = −20·log10(%s) = %s", number(k.Loop.GainMarginFrequency, "Hz"), short(g), number(k.Loop.GainMargin, "dB"))
 		},
 	}.decide,
+	Mend:   otherValues,
+	WhyNot: noValues,
 }

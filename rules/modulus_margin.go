@@ -28,4 +28,6 @@ var modulusMargin = Rule{
 			return fmt.Sprintf("|1 + T| at %s = %s", number(k.Loop.ModulusFrequency, "Hz"), number(k.Loop.ModulusMargin, ""))
 		},
 	}.decide,
+	Mend:   otherValues,
+	WhyNot: noValues,
 }

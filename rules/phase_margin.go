@@ -33,4 +33,6 @@ var phaseMargin = Rule{
 				number(180-k.Loop.PhaseMargin, "deg"), number(k.Loop.PhaseMargin, "deg"))
 		},
 	}.decide,
+	Mend:   otherValues,
+	WhyNot: noValues,
 }

@@ -50,6 +50,8 @@ var resonanceCrossover = Rule{
 		c.relate(&f, "sets the resonance", "/inductor/inductance", "/output-capacitor/capacitance", "/output-capacitors")
 		return []Finding{f}
 	},
+	Mend:   otherValues,
+	WhyNot: noValues,
 }
 
 func voltageMode(c *Case) bool {

@@ -45,6 +45,8 @@ var rhpZeroCrossover = Rule{
 		c.blameFilter(&f)
 		return []Finding{f}
 	},
+	Mend:   otherValues,
+	WhyNot: noValues,
 }
 
 // blameFilter marks a finding about a right-half-plane zero that only an input filter can have made: the buck family has none

@@ -93,7 +93,11 @@ type Rule struct {
 	Applies  func(*Case) bool
 	Needs    []string // JSON pointers without which it cannot be assessed
 	Decide   func(*Case) []Finding
-	Mend     func(*Case, *Finding) []Mend // ways out of a finding, before they are checked; nil: none is known
+	// Mend proposes ways out of a finding, before they are checked, in attempts from 0 on: the next one is asked for when none of the last held and there
+	// are more. nil: none is known.
+	Mend func(c *Case, f *Finding, attempt int) (mends []Mend, more bool)
+	// WhyNot says what stands in the way where no attempt held, and what would help; nil, "": nothing is known of that.
+	WhyNot func(*Case, *Finding) string
 
 	Reads  Reading
 	Judges func(*analysis.Corner) bool // the corners that the rule is about; nil: all of them
@@ -119,6 +123,7 @@ type Case struct {
 	Result   *analysis.Result
 	Settings Settings
 
+	every   []*Rule  // the catalogue, for rules that ask what others say
 	pointed *pointed // nil: nothing is remembered
 	stages  []int    // the corners with distinct power stages; nil: not listed yet
 }

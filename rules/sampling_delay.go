@@ -51,4 +51,6 @@ var samplingDelay = Rule{
 		c.relate(&f, "decides the limit", "/compensator/sampling-frequency", "/compensator/delay")
 		return []Finding{f}
 	},
+	Mend:   otherValues,
+	WhyNot: noValues,
 }

@@ -38,4 +38,6 @@ var severalCrossovers = Rule{
 		}
 		return []Finding{f}
 	},
+	Mend:   otherValues,
+	WhyNot: noValues,
 }

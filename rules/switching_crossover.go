@@ -39,4 +39,6 @@ var switchingCrossover = Rule{
 		c.relate(&f, "sets the limit", "/switching-frequency")
 		return []Finding{f}
 	},
+	Mend:   otherValues,
+	WhyNot: noValues,
 }

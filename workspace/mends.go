@@ -15,23 +15,35 @@ import (
 // finding is gone, and no other has come or got worse.
 func (w *Workspace) mend(ctx context.Context, c *rules.Case, f *File, o Options) {
 	o.Mends, o.Study = false, Study{}
+	tried := map[string]File{} // by text: one repair may answer several findings
 	for i := range f.Findings {
 		found := &f.Findings[i]
 		rule := rules.Find(found.Rule)
 		if rule == nil || rule.Mend == nil {
 			continue
 		}
-		for _, m := range rule.Mend(c, found) {
-			text, ok := Mended(f.Document, m.Edits)
-			if !ok || ctx.Err() != nil {
-				continue
+		for attempt, more := 0, true; more && len(found.Mends) == 0 && ctx.Err() == nil; attempt++ {
+			var proposed []rules.Mend
+			proposed, more = rule.Mend(c, found, attempt)
+			for _, m := range proposed {
+				text, ok := Mended(f.Document, m.Edits)
+				if !ok {
+					continue
+				}
+				after, known := tried[string(text.Text)]
+				if !known {
+					after = w.CheckDocument(ctx, text, o)
+					tried[string(text.Text)] = after
+				}
+				if after.Status != Checked || after.Defect || !cures(*found, f.Findings, after.Findings) {
+					continue
+				}
+				m.After = append(slices.Clone(m.After), moved(f.Result, after.Result)...)
+				found.Mends = append(found.Mends, m)
 			}
-			after := w.CheckDocument(ctx, text, o)
-			if after.Status != Checked || after.Defect || !cures(*found, f.Findings, after.Findings) {
-				continue
-			}
-			m.After = append(m.After, moved(f.Result, after.Result)...)
-			found.Mends = append(found.Mends, m)
+		}
+		if len(found.Mends) == 0 && rule.WhyNot != nil {
+			found.Unmended = rule.WhyNot(c, found)
 		}
 	}
 }

@@ -78,6 +78,6 @@ read, parsed or validated; 3 a defect of the program itself. When several apply,
 	}
 	root.SetFlagErrorFunc(suggestFlag)
 	root.SetVersionTemplate("halfplane {{.Version}}\n")
-	root.AddCommand(newCheck(), newCompare(), newFigures(), newRule(), newSchema(), newServe(), newDemo())
+	root.AddCommand(newCheck(), newCompare(), newMend(), newFigures(), newRule(), newSchema(), newServe(), newDemo())
 	return root
 }

@@ -26,7 +26,7 @@ func TestJoinedShardsSayWhatOneCheckSays(t *testing.T) {
 		code := run(append([]string{"check"}, args...), nil, &out, &errs)
 		return code, out.String()
 	}
-	base := []string{"--depth", "quick", "--today", "2030-06-30", "--mends", "shelf"}
+	base := []string{"--depth", "quick", "--today", "2030-06-30", "shelf"}
 	for _, k := range []string{"1", "2", "3"} {
 		code, _ := check(append([]string{"--shard", k + "/3", "--as", "json", "--to", k + ".json"}, base...)...)
 		require.LessOrEqual(t, code, 2)
@@ -37,6 +37,15 @@ func TestJoinedShardsSayWhatOneCheckSays(t *testing.T) {
 		assert.Equal(t, want, got, form)
 		require.NotEmpty(t, whole)
 		assert.True(t, whole == joint, "%s differs", form)
+	}
+	// With repairs, on a few files.
+	mends := []string{"--depth", "quick", "--mends", "shelf/stated-figure", "shelf/turns-ratio"}
+	check(append([]string{"--as", "json", "--to", "mends.json"}, mends...)...)
+	for _, form := range []string{"text", "json", "sarif"} {
+		_, whole := check(append([]string{"--as", form}, mends...)...)
+		_, again := check("--as", form, "--merge", "mends.json")
+		assert.True(t, whole == again, "%s differs", form)
+		assert.Contains(t, whole, "0.5051")
 	}
 	code, _ := check("--merge", "1.json", "--merge", "2.json", "--merge", "3.json", "--fail-at", "never")
 	assert.Equal(t, 2, code, "a file that cannot be read stays one")
