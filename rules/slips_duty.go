@@ -81,7 +81,7 @@ func closedForms(key string, s *plant.Stage) []func(d float64) float64 {
 			[]form{func(d float64) float64 { return s.Drive / (1 - d) }},
 			[]form{func(d float64) float64 { return s.Drive * d / (1 - d) }})
 	case "control-gain":
-		return pick([]form{func(d float64) float64 { return v / d }},
+		return pick(nil, // written with the input, as it mostly is, a buck's has no duty
 			[]form{func(d float64) float64 { return v / (1 - d) }, func(d float64) float64 { return vi / ((1 - d) * (1 - d)) }},
 			[]form{func(d float64) float64 { return v / (d * (1 - d)) }, func(d float64) float64 { return vi / ((1 - d) * (1 - d)) }})
 	case "resonance":

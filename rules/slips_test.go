@@ -67,7 +67,7 @@ func TestSlipsAreNamed(t *testing.T) {
 		{"line gain in decibels", buck, fmt.Sprintf("line-gain: %.2f", 20*math.Log10(3.3/12)), "stated-figure", "decibels for a ratio"},
 		{"line gain wrong", buck, "line-gain: 0.4", "stated-figure", ""},
 		{"control gain in decibels", buck, fmt.Sprintf("control-gain: %.2f", 20*math.Log10(11.65)), "stated-figure", "decibels for a ratio"},
-		{"control gain with V over 1 − D", buck, fmt.Sprintf("control-gain: %.2f", 3.3/(1-3.3/12)), "stated-figure", "1 − D for D"},
+		{"line gain with 1 − D", buck, fmt.Sprintf("line-gain: %.3f", 1-3.3/12), "stated-figure", "1 − D for D"},
 		{"control gain wrong", buck, "control-gain: 15", "stated-figure", ""},
 		{"critical current as the whole ripple", buck, fmt.Sprintf("critical-current: %.3f", 1.8497), "stated-figure", "the ripple from peak to peak for its peak"},
 		{"critical current right", buck, fmt.Sprintf("critical-current: %.3f", 3.3*(1-3.3/12)/(3.3e-6*400e3)/2), "", ""},
