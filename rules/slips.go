@@ -29,7 +29,10 @@ func nameSlip(c *Case, corner *analysis.Corner, figure statedFigure, stated, got
 		if figure.agrees(s.values[0], got, c.threshold(statedTolerance)) {
 			continue // no slip: it hardly changes the figure
 		}
-		if slices.ContainsFunc(s.values, func(value float64) bool { return figure.agrees(stated, value, slipFit) }) {
+		fits := func(value float64) bool {
+			return figure.agrees(stated, value, slipFit) && (inverts(c.circuit(corner.At).Topology) || stated*value >= 0)
+		}
+		if slices.ContainsFunc(s.values, fits) {
 			fitting = append(fitting, s)
 		}
 	}
@@ -54,6 +57,9 @@ func nameSlip(c *Case, corner *analysis.Corner, figure statedFigure, stated, got
 	}
 	return rule, strings.Join(all, ", or ")
 }
+
+// inverts says whether a topology turns the voltage over, so that a gain may be written with either sign.
+func inverts(t plant.Topology) bool { return t == plant.BuckBoost || t == plant.Cuk }
 
 // coincide says whether two slips come to the same figure: their loss-free or their scaled values are equal.
 func coincide(a, b slip) bool {
