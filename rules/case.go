@@ -9,6 +9,7 @@ import (
 	"halfplane/analysis"
 	"halfplane/analysis/network"
 	"halfplane/analysis/plant"
+	"halfplane/analysis/synthesis"
 	"halfplane/schema"
 )
 
@@ -57,6 +58,6 @@ func Prepare(ctx context.Context, doc *schema.Document, r schema.Resolver, setti
 	}
 	return &Case{
 		Spec: spec, Design: design, Result: result, Settings: settings, every: list, stages: distinctStages(result),
-		pointed: &pointed{map[*analysis.Setting]*plant.Circuit{}, map[*analysis.Setting]*network.Parts{}, map[int][]Mend{}},
+		pointed: &pointed{map[*analysis.Setting]*plant.Circuit{}, map[*analysis.Setting]*network.Parts{}, map[int][]Mend{}, map[slack]*synthesis.Problem{}},
 	}, nil, nil
 }

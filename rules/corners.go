@@ -9,6 +9,7 @@ import (
 	"halfplane/analysis"
 	"halfplane/analysis/network"
 	"halfplane/analysis/plant"
+	"halfplane/analysis/synthesis"
 )
 
 // worst finds the corner with the highest score; a corner whose score is NaN is passed over. It returns nil when no corner
@@ -144,6 +145,7 @@ type pointed struct {
 	circuits map[*analysis.Setting]*plant.Circuit
 	networks map[*analysis.Setting]*network.Parts
 	mends    map[int][]Mend // of the loop, by attempt
+	problems map[slack]*synthesis.Problem
 }
 
 // circuit is the power stage and modulator at a corner; it is not to be changed.

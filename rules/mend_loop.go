@@ -21,10 +21,30 @@ import (
 type slack struct{ degrees, decibels, part float64 }
 
 // slacks are tried one after another, the smallest first.
-var slacks = [...]slack{{0.3, 0.1, 0.01}, {2, 0.5, 0.04}, {5, 1.2, 0.1}}
+var slacks = [...]slack{{0.3, 0.1, 0.01}, {2, 0.5, 0.04}, {5, 1.2, 0.1}, {10, 2.5, 0.2}}
 
-// loopProblem is the search for values of the compensator's parts.
+// byValues are the rules that the values of a compensator's parts decide. What the others say of the loop (a pole that is not stated, an amplifier's bandwidth that is
+// not given) no value changes.
+var byValues = map[string]bool{
+	"closed-loop-stability": true, "phase-margin": true, "gain-margin": true, "modulus-margin": true, "conditional-stability": true, "several-crossovers": true,
+	"crossover-range": true, "low-frequency-gain": true, "comparator-ripple": true, "sampling-delay": true, "rhp-zero-crossover": true, "resonance-crossover": true,
+	"switching-crossover": true,
+}
+
+// loopProblem is the search for values of the compensator's parts; what was tried with one slack is remembered.
 func (c *Case) loopProblem(s slack) *synthesis.Problem {
+	if c.pointed != nil {
+		if p := c.pointed.problems[s]; p != nil {
+			return p
+		}
+		p := c.newLoopProblem(s)
+		c.pointed.problems[s] = p
+		return p
+	}
+	return c.newLoopProblem(s)
+}
+
+func (c *Case) newLoopProblem(s slack) *synthesis.Problem {
 	tight := *c
 	tight.Settings = c.tightened(s)
 	return &synthesis.Problem{
@@ -58,7 +78,7 @@ func (c *Case) violation(d *analysis.Design, r *analysis.Result) float64 {
 	tried := &Case{Spec: c.Spec, Design: d, Settings: c.Settings, Result: r}
 	sum := 0.0
 	for _, rule := range c.every {
-		if rule.Reads != Figures || rule.Decide == nil || c.Settings.Severities[rule.Name] == None {
+		if !byValues[rule.Name] || c.Settings.Severities[rule.Name] == None {
 			continue
 		}
 		out := decide(tried, rule)
@@ -143,6 +163,7 @@ func otherValues(c *Case, _ *Finding, attempt int) (mends []Mend, more bool) {
 		func(ctx context.Context) []synthesis.Answer { return one(c.loopProblem(slacks[1]).Two(ctx)) },
 		func(ctx context.Context) []synthesis.Answer { return one(c.loopProblem(slacks[1]).All(ctx)) },
 		func(ctx context.Context) []synthesis.Answer { return one(c.loopProblem(slacks[2]).All(ctx)) },
+		func(ctx context.Context) []synthesis.Answer { return one(c.loopProblem(slacks[3]).All(ctx)) },
 	}
 	if attempt >= len(attempts) || len(c.looseParts()) == 0 {
 		return nil, false
@@ -175,13 +196,19 @@ func one(a synthesis.Answer, ok bool) []synthesis.Answer {
 
 // noValues says what stands in the way when no values of the network's parts meet everything: what the best that was found still breaks, and what would help.
 func noValues(c *Case, _ *Finding) string {
-	p := c.loopProblem(slacks[0])
+	if inner := decide(c, &slopeCompensation).Findings; len(inner) > 0 && inner[0].Severity == Error {
+		return "the inner current loop comes first: see slope-compensation"
+	}
+	p := c.loopProblem(slacks[1])
 	if len(p.Parts) == 0 {
 		return "the compensator's values stand in a file that other designs share, or cannot be rewritten"
 	}
 	best, ok := p.All(context.Background())
-	if ok || math.IsInf(best.Violation, 1) {
+	switch {
+	case math.IsInf(best.Violation, 1):
 		return ""
+	case ok:
+		return "values were found that hold at the extremes of quick depth, but none that hold at full depth"
 	}
 	d := synthesis.With(c.Design, best.Changes)
 	r, err := analysis.Analyse(context.Background(), d, analysis.Options{Depth: analysis.Quick, Jobs: 1})
@@ -192,7 +219,7 @@ func noValues(c *Case, _ *Finding) string {
 	var broken []string
 	worstRule, most := "", 0.0
 	for _, rule := range c.every {
-		if rule.Reads != Figures || rule.Decide == nil {
+		if !byValues[rule.Name] {
 			continue
 		}
 		for _, f := range decide(tried, rule).Findings {

@@ -62,6 +62,7 @@ var slopeCompensation = Rule{
 		c.relate(&f, "decides the slopes", "/modulator/current-sense-gain", "/inductor/inductance", "/input-voltage", "/output-voltage", "/magnetizing-inductance")
 		return []Finding{f}
 	},
+	Mend: steeperRamp,
 }
 
 func hasCurrentLoop(k *analysis.Corner) bool {

@@ -16,6 +16,14 @@ const starts = 14
 // All looks for a whole network: begun by the K factor at crossovers over the whole range, and as it is, the best beginnings followed by the simplex search.
 // With ok false the answer is the best that was found, and what it violates.
 func (p *Problem) All(ctx context.Context) (best Answer, ok bool) {
+	if p.whole == nil {
+		best, ok = p.all(ctx)
+		p.whole = &whole{best, ok}
+	}
+	return p.whole.answer, p.whole.ok
+}
+
+func (p *Problem) all(ctx context.Context) (best Answer, ok bool) {
 	parts := p.present()
 	if len(parts) == 0 {
 		return best, false
@@ -55,8 +63,11 @@ func (p *Problem) All(ctx context.Context) (best Answer, ok bool) {
 		return all[i].out.Crossover > all[j].out.Crossover
 	})
 	best.Violation = math.Inf(1)
-	for _, b := range all[:min(4, len(all))] {
-		a, found := p.Some(ctx, parts, b.values, 90*len(parts), false)
+	for i, b := range all[:min(4, len(all))] {
+		if ok && i > 1 {
+			break // two good ends are enough to choose from
+		}
+		a, found := p.Some(ctx, parts, b.values, 60+40*len(parts), false)
 		if found && (!ok || a.Crossover > best.Crossover) || !ok && a.Violation < best.Violation {
 			best, ok = a, ok || found
 		}

@@ -27,6 +27,12 @@ type Problem struct {
 	Jobs  int
 
 	known map[string]Outcome
+	whole *whole // what All found
+}
+
+type whole struct {
+	answer Answer
+	ok     bool
 }
 
 // Outcome is what became of one choice of values.
