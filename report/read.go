@@ -74,7 +74,7 @@ func matchesSchema(v any) error {
 
 // file is one file's entry as the check gave it.
 func (f fileOut) file() (workspace.File, error) {
-	out := workspace.File{Path: f.Path, Root: workspace.RootOf(f.Path), SHA256: f.SHA256, Status: workspace.Checked, Policy: f.Policy, Proof: f.Proof.proof()}
+	out := workspace.File{Path: f.Path, Root: workspace.RootOf(f.Path), SHA256: f.SHA256, StandIn: true, Status: workspace.Checked, Policy: f.Policy, Proof: f.Proof.proof()}
 	if f.Status == workspace.Unreadable.String() {
 		out.Status = workspace.Unreadable
 	}

@@ -30,7 +30,8 @@ type File struct {
 	Path     string // as it is shown: as given, else relative to the working folder, with '/'
 	Root     string // absolute path of the workspace's folder
 	Document *schema.Document
-	SHA256   string // of the text, where it is not at hand any more
+	SHA256   string // of the text, where it is not at hand any more and there was one
+	StandIn  bool   // the document has the shape of the text and not the text itself
 	Status   Status
 	Spec     *schema.Spec     // nil when unreadable
 	Result   *analysis.Result // nil when unreadable

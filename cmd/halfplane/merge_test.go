@@ -26,7 +26,7 @@ func TestJoinedShardsSayWhatOneCheckSays(t *testing.T) {
 		code := run(append([]string{"check"}, args...), nil, &out, &errs)
 		return code, out.String()
 	}
-	base := []string{"--depth", "quick", "--today", "2030-06-30", "shelf"}
+	base := []string{"--depth", "quick", "--today", "2030-06-30", "shelf", "shelf/no such.converter.yaml"}
 	for _, k := range []string{"1", "2", "3"} {
 		code, _ := check(append([]string{"--shard", k + "/3", "--as", "json", "--to", k + ".json"}, base...)...)
 		require.LessOrEqual(t, code, 2)
