@@ -1,20 +1,29 @@
 #!/bin/sh
-# The gate behind shard.sh: joins what the jobs found, leaves a report in every form, and ends with the gate's exit status. join.sh N wants the findings of
-# all N jobs: one that is missing is no clean shelf.
-#   HALFPLANE (halfplane)  LEDGER (halfplane.ledger)  REPORTS (halfplane-reports)  FAIL_AT (error)
+# The gate behind N jobs of shard.sh: join.sh N joins halfplane-reports/shards/1.json to N.json and writes what gate.sh writes. It runs
+# in the folder that the jobs ran in, since files are named relative to it.
+# Exit status: what 'halfplane check' would have had for all files at once; 2 where a result is missing.
 set -eu
-[ $# -eq 1 ] || { echo "usage: join.sh N" >&2; exit 2; }
-of=$1
-reports=${REPORTS:-halfplane-reports}
-ledger=${LEDGER:-halfplane.ledger}
+here=$(dirname "$0")
+. "$here/settings.sh"
+if [ $# -ne 1 ] || ! [ "$1" -ge 1 ] 2>/dev/null; then
+  say "usage: join.sh N"
+  exit 2
+fi
+n=$1
+
 set --
-part=1
-while [ "$part" -le "$of" ]; do
-  [ -s "$reports/shard-$part.json" ] || { echo "join.sh: the findings of job $part of $of are missing: $reports/shard-$part.json" >&2; exit 2; }
-  set -- "$@" --merge "$reports/shard-$part.json"
-  part=$((part + 1))
+k=1
+missing=
+while [ "$k" -le "$n" ]; do
+  if [ -s "$reports/shards/$k.json" ]; then
+    set -- "$@" --merge "$reports/shards/$k.json"
+  else
+    missing="$missing $k"
+  fi
+  k=$((k + 1))
 done
-[ ! -f "$ledger" ] || set -- "$@" --ledger "$ledger"
-exec "${HALFPLANE:-halfplane}" check "$@" --fail-at "${FAIL_AT:-error}" \
-  --as sarif --to "$reports/findings.sarif" --as junit --to "$reports/findings.xml" \
-  --as markdown --to "$reports/findings.md" --as json --to "$reports/findings.json" --as text
+if [ -n "$missing" ]; then
+  say "the result of job$missing of $n is missing in $reports/shards: what it should have checked is not known"
+  exit 2
+fi
+judged "$@"

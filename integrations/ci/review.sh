@@ -1,11 +1,29 @@
 #!/bin/sh
-# What a branch does to every margin, since it parted from BASE: review.sh BASE leaves a review comment and prints the same as text. Exit status 1: a
-# margin falls through its target.
-#   HALFPLANE (halfplane)  REPORTS (halfplane-reports)
+# What a branch does to every margin, as the text of a review comment: review.sh TARGET [PATH…] compares HEAD with the commit
+# at which it parted from TARGET and writes halfplane-reports/review.md. It reports and leaves judging to the gate.
+# Exit status: 0 where there is a report; else that of 'halfplane compare'.
 set -eu
-[ $# -ge 1 ] || { echo "usage: review.sh BASE [PATH…]" >&2; exit 2; }
-base=$(git merge-base "$1" HEAD) || { echo "review.sh: $1 and HEAD have no commit in common here; fetch the whole history" >&2; exit 2; }
+here=$(dirname "$0")
+. "$here/settings.sh"
+if [ $# -lt 1 ]; then
+  say "usage: review.sh TARGET [PATH…]"
+  exit 2
+fi
+target=$1
 shift
-reports=${REPORTS:-halfplane-reports}
+
 mkdir -p "$reports"
-exec "${HALFPLANE:-halfplane}" compare "$base" HEAD "$@" --as markdown --to "$reports/review.md" --as text
+rm -f "$reports/review.md"
+if ! git rev-parse --verify --quiet "$target^{commit}" >/dev/null; then
+  say "git knows no commit $target here: is it fetched?"
+  exit 2
+fi
+if ! base=$(git merge-base "$target" HEAD); then
+  say "$target and HEAD have no commit in common here: the review needs the whole history, not a shallow clone"
+  exit 2
+fi
+status=0
+"$program" compare --depth "$depth" ${policy:+--policy "$policy"} --as markdown --to "$reports/review.md" --as text \
+  "$base" HEAD "$@" || status=$?
+if [ "$status" -le 2 ] && [ -s "$reports/review.md" ]; then exit 0; fi
+exit "$status"

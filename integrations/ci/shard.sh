@@ -1,14 +1,28 @@
 #!/bin/sh
-# One of N jobs side by side: shard.sh K N checks every N-th design and leaves its findings for join.sh, which is the gate. It fails only where the
-# program itself does.
-#   HALFPLANE (halfplane)  SHELF (.)  REPORTS (halfplane-reports)
+# One of N jobs that run side by side: shard.sh K N [PATH…] checks every N-th file, the K-th first, and leaves the result in
+# halfplane-reports/shards/K.json. It does not judge: join.sh does, once, for all of them.
+# Exit status: 0 where the result says everything there is to say, also that a file cannot be read.
 set -eu
-[ $# -ge 2 ] || { echo "usage: shard.sh K N" >&2; exit 2; }
-part=$1 of=$2
+here=$(dirname "$0")
+. "$here/settings.sh"
+if [ $# -lt 2 ]; then
+  say "usage: shard.sh K N [PATH…]"
+  exit 2
+fi
+k=$1 n=$2
 shift 2
-reports=${REPORTS:-halfplane-reports}
-mkdir -p "$reports"
+
+result=$reports/shards/$k.json
+mkdir -p "$reports/shards"
+rm -f "$result"
 status=0
-"${HALFPLANE:-halfplane}" check "${SHELF:-.}" --shard "$part/$of" "$@" --fail-at never --as json --to "$reports/shard-$part.json" || status=$?
-[ -s "$reports/shard-$part.json" ] || exit "$status"
-[ "$status" -le 2 ] || exit "$status"
+"$program" check --depth "$depth" ${policy:+--policy "$policy"} ${since:+--since "$since"} --fail-at never \
+  --shard "$k/$n" --as json --to "$result" --as text "$@" || status=$?
+if [ "$status" -eq 0 ]; then exit 0; fi
+
+# What went wrong is left to join.sh if the result tells it; a folder that could not be searched, for example, it cannot tell.
+told=0
+if [ -s "$result" ]; then "$program" check --fail-at never --quiet --merge "$result" >/dev/null || told=$?; fi
+if [ "$told" -eq "$status" ]; then exit 0; fi
+rm -f "$result"
+exit "$status"
