@@ -157,13 +157,30 @@ func (c *Case) looseParts() []synthesis.Part {
 // otherValues proposes other values of the compensator's parts, the smallest change first: one part, with a little slack and with more, then two parts, then the
 // whole network. All rules of the loop share what was found.
 func otherValues(c *Case, _ *Finding, attempt int) (mends []Mend, more bool) {
+	// What cannot be found with less slack is not looked for with more.
+	foundBefore := func(ctx context.Context) bool { _, ok := c.loopProblem(slacks[1]).All(ctx); return ok }
 	attempts := [...]func(context.Context) []synthesis.Answer{
 		func(ctx context.Context) []synthesis.Answer { return c.loopProblem(slacks[0]).One(ctx) },
-		func(ctx context.Context) []synthesis.Answer { return c.loopProblem(slacks[1]).One(ctx) },
+		func(ctx context.Context) []synthesis.Answer {
+			if c.pointed != nil && len(c.pointed.mends[0]) == 0 {
+				return nil
+			}
+			return c.loopProblem(slacks[1]).One(ctx)
+		},
 		func(ctx context.Context) []synthesis.Answer { return one(c.loopProblem(slacks[1]).Two(ctx)) },
 		func(ctx context.Context) []synthesis.Answer { return one(c.loopProblem(slacks[1]).All(ctx)) },
-		func(ctx context.Context) []synthesis.Answer { return one(c.loopProblem(slacks[2]).All(ctx)) },
-		func(ctx context.Context) []synthesis.Answer { return one(c.loopProblem(slacks[3]).All(ctx)) },
+		func(ctx context.Context) []synthesis.Answer {
+			if !foundBefore(ctx) {
+				return nil
+			}
+			return one(c.loopProblem(slacks[2]).All(ctx))
+		},
+		func(ctx context.Context) []synthesis.Answer {
+			if !foundBefore(ctx) {
+				return nil
+			}
+			return one(c.loopProblem(slacks[3]).All(ctx))
+		},
 	}
 	if attempt >= len(attempts) || len(c.looseParts()) == 0 {
 		return nil, false

@@ -50,6 +50,9 @@ type Answer struct {
 // Numerator is the path of all coefficients of a digital compensator's numerator together; its value is a factor, 1 as it is.
 const Numerator = "compensator.numerator"
 
+// mostTried bounds how many choices one problem analyses: a few seconds for a stage with one inductor, half a minute for one with two.
+const mostTried = 3000
+
 // With is a design with other nominal values: the spread of a field keeps its proportion to nominal.
 func With(d *analysis.Design, changes []analysis.Setting) *analysis.Design {
 	out := *d
@@ -99,6 +102,9 @@ func (p *Problem) try(ctx context.Context, changes []analysis.Setting) Outcome {
 	}
 	if out, tried := p.known[key.String()]; tried {
 		return out
+	}
+	if len(p.known) >= mostTried {
+		return Outcome{Violation: math.Inf(1)}
 	}
 	out := p.analysed(ctx, With(p.Design, changes))
 	if p.known == nil {
